@@ -7,4 +7,6 @@
 pub mod conventions;
 pub mod crystal;
 pub mod frames;
+pub mod instrument;
 pub mod quantity;
+pub mod radiation;
