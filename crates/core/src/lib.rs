@@ -4,6 +4,7 @@
 //! order data walks through them, are the modules below; each calls only those above it. Frames, signs and units
 //! are stated once, in [`conventions`].
 
+pub mod aim;
 pub mod conventions;
 pub mod crystal;
 pub mod frames;
