@@ -3,5 +3,10 @@
 //! All of this would be true with no instrument in the building.
 
 mod cell;
+mod symmetry;
 
 pub use cell::{CellError, CrystalSystem, UnitCell};
+pub use symmetry::{
+    AbsenceTest, Centring, EQUAL_ANGLES_DEG, EQUAL_LENGTHS, Operation, Presence, SpaceGroup, SymmetryError,
+    SymmetryQuery, TRANSLATION_STEPS, UnknownSymbol,
+};
