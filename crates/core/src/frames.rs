@@ -2,8 +2,11 @@
 //!
 //! Geometry that knows no crystal and no machine. See [`crate::conventions`] for the frames themselves.
 
+mod half_angle;
 mod hkl;
 mod spaces;
+pub mod subproblem;
 
+pub use half_angle::HalfAngle;
 pub use hkl::Hkl;
 pub use spaces::{CrystalCartesian, Frame, Head, Lab, Rotation, Vector, angle_between};

@@ -11,3 +11,6 @@ pub mod frames;
 pub mod instrument;
 pub mod quantity;
 pub mod radiation;
+
+#[cfg(test)]
+mod testing;
