@@ -9,6 +9,7 @@ pub mod conventions;
 pub mod crystal;
 pub mod frames;
 pub mod instrument;
+pub mod orient;
 pub mod quantity;
 pub mod radiation;
 
