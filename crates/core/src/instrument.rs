@@ -16,5 +16,5 @@ pub use description::{Approach, AxisDescription, Interval, Limits, MachineDescri
 pub use library::{BUILT_IN_MACHINES, built_in_machine};
 pub use setting::{MAX_AXES, Setting};
 pub use stack::Instrument;
-pub(crate) use travel::wrap_deg;
+pub(crate) use travel::{LIMIT_DUST_DEG, wrap_deg};
 pub use travel::{Travel, TravelCheck};

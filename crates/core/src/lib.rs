@@ -10,8 +10,10 @@ pub mod crystal;
 pub mod frames;
 pub mod instrument;
 pub mod orient;
+pub mod pace;
 pub mod quantity;
 pub mod radiation;
+pub mod reach;
 
 #[cfg(test)]
 mod testing;

@@ -91,6 +91,24 @@ impl Travel {
         best
     }
 
+    /// Chooses among the reading + 360°k that lie inside the limits the one nearest to a position; the one that
+    /// [`Self::check`] gives where none does.
+    pub fn check_near(&self, reading_deg: f64, near_deg: f64) -> TravelCheck {
+        let deepest = self.check(reading_deg);
+        if self.is_endless() {
+            return TravelCheck { reading_deg: near_deg + wrap_deg(reading_deg - near_deg), ..deepest };
+        }
+        let nearest = self
+            .spans
+            .iter()
+            .flat_map(|span| span.inside(reading_deg))
+            .min_by(|a, b| (a - near_deg).abs().total_cmp(&(b - near_deg).abs()));
+        nearest.map_or(deepest, |reading_deg| TravelCheck {
+            reading_deg,
+            clearance_deg: self.clearance_as_read_deg(reading_deg),
+        })
+    }
+
     /// Degrees to the limits of the interval that holds exactly this reading, not a full turn away from it: negative
     /// outside all of them.
     pub fn clearance_as_read_deg(&self, reading_deg: f64) -> f64 {
@@ -105,10 +123,7 @@ impl Travel {
             return vec![from_deg + wrap_deg(reading_deg - from_deg)];
         }
         let here = self.spans.iter().find(|s| (from_deg - s.centre).abs() <= s.half + LIMIT_DUST_DEG);
-        let Some(span) = here else { return Vec::new() };
-        let (low, high) = (span.centre - span.half - LIMIT_DUST_DEG, span.centre + span.half + LIMIT_DUST_DEG);
-        let first = reading_deg + 360.0 * ((low - reading_deg) / 360.0).ceil();
-        std::iter::successors(Some(first), |r| Some(r + 360.0)).take_while(|r| *r <= high).collect()
+        here.map_or_else(Vec::new, |span| span.inside(reading_deg).collect())
     }
 }
 
@@ -142,6 +157,13 @@ impl Span {
             return Err(MachineProblem::new(path, message));
         }
         Ok(Self { centre: 0.5 * (low + high), half: 0.5 * (high - low) })
+    }
+
+    /// Every reading + 360°k inside, smallest first.
+    fn inside(&self, reading_deg: f64) -> impl Iterator<Item = f64> + use<> {
+        let (low, high) = (self.centre - self.half - LIMIT_DUST_DEG, self.centre + self.half + LIMIT_DUST_DEG);
+        let first = reading_deg + 360.0 * ((low - reading_deg) / 360.0).ceil();
+        std::iter::successors(Some(first), |r| Some(r + 360.0)).take_while(move |r| *r <= high)
     }
 
     /// The representative nearest to the centre is deepest inside if any is inside, and nearest if none is.
