@@ -44,7 +44,9 @@ fn groups_are_described_as_gemmi_describes_them() {
         let group = by_symbol(&row["xhm"]).unwrap();
         let centring = if row["xhm"].ends_with(":R") { "P" } else { &row["centring_letter"] };
         assert_eq!(group.number(), number::<u16>(&row, "number"));
-        assert_eq!(group.point_group(), row["point_group"], "{}", row["xhm"]);
+        // One point group: gemmi turns the symbol with the axes, ours names the type.
+        let point_group = row["point_group"].replace("-62m", "-6m2");
+        assert_eq!(group.point_group(), point_group, "{}", row["xhm"]);
         assert_eq!(group.laue_class(), row["laue_class"], "{}", row["xhm"]);
         assert_eq!(format!("{:?}", group.system()).to_lowercase(), row["crystal_system"]);
         assert_eq!(group.centring().letter().to_string(), centring);
@@ -81,9 +83,30 @@ fn absences_and_multiplicities_agree_for_every_node() {
 
 /// Settings in gemmi's list beyond the 530 of International Tables A: enlarged cells, shifted origins and one more old name.
 const BEYOND_THE_TABLES: [&str; 24] = [
-    "I 1 21 1", "C 1 21 1", "P 21212(a)", "C 2 2 21a)", "C 2 2 2a", "F 2 2 2a", "I 2 2 2a", "P 42 21 2a", "I 2 3a", "B 1 2 1",
-    "C 1 1 2", "B 1 21 1", "C 1 1 21", "F 1 2 1", "F 1 m 1", "F 1 d 1", "F 1 2/m 1", "A b a m", "C 4 2 2", "C 4 2 21",
-    "F 4 2 2", "C -4 2 m", "C -4 2 b", "F 4/m m m",
+    "I 1 21 1",
+    "C 1 21 1",
+    "P 21212(a)",
+    "C 2 2 21a)",
+    "C 2 2 2a",
+    "F 2 2 2a",
+    "I 2 2 2a",
+    "P 42 21 2a",
+    "I 2 3a",
+    "B 1 2 1",
+    "C 1 1 2",
+    "B 1 21 1",
+    "C 1 1 21",
+    "F 1 2 1",
+    "F 1 m 1",
+    "F 1 d 1",
+    "F 1 2/m 1",
+    "A b a m",
+    "C 4 2 2",
+    "C 4 2 21",
+    "F 4 2 2",
+    "C -4 2 m",
+    "C -4 2 b",
+    "F 4/m m m",
 ];
 
 #[test]

@@ -249,7 +249,7 @@ fn put_in_order(found: &mut [Found]) {
         let length = rest.iter().position(|next| !same(first, next)).unwrap_or(rest.len());
         let (run, after) = rest.split_at_mut(length);
         run.iter_mut().for_each(|node| node.d = d);
-        run.sort_unstable_by(|a, b| b.hkl.cmp(&a.hkl));
+        run.sort_unstable_by_key(|node| std::cmp::Reverse(node.hkl));
         rest = after;
     }
 }
