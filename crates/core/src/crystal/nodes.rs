@@ -241,7 +241,7 @@ fn indices(start: f64, step: f64, square: f64) -> std::ops::RangeInclusive<i32> 
 /// Sorts by spacing, finds the runs of nodes that differ only by rounding, gives each run one spacing and sorts it by
 /// indices.
 fn put_in_order(found: &mut [Found]) {
-    found.par_sort_unstable_by(|a, b| b.d.total_cmp(&a.d).then_with(|| b.hkl.cmp(&a.hkl)));
+    found.par_sort_unstable_by(|a, b| b.d.total_cmp(&a.d));
     let same = |first: &Found, next: &Found| first.d - next.d <= SAME_D * first.d;
     let mut rest = found;
     while let Some(first) = rest.first() {

@@ -8,6 +8,7 @@ use super::*;
 use crate::crystal::{Centring, SymmetryQuery};
 use crate::frames::Hkl;
 use crate::pace::Unhurried;
+use crate::testing::cases;
 
 fn cell(numbers: [f64; 6]) -> UnitCell {
     let [a, b, c, alpha, beta, gamma] = numbers;
@@ -55,11 +56,6 @@ fn any_cell() -> impl Strategy<Value = UnitCell> {
         edge().prop_map(|a| [a, a, a, 90.0, 90.0, 90.0]),
     ]
     .prop_filter_map("closes no cell", |[a, b, c, al, be, ga]| UnitCell::new(a, b, c, al, be, ga).ok())
-}
-
-fn cases() -> ProptestConfig {
-    let asked = std::env::var("RINGWRIGHT_CASES").ok().and_then(|text| text.parse().ok());
-    ProptestConfig::with_cases(asked.unwrap_or(48))
 }
 
 proptest! {

@@ -45,12 +45,14 @@ fn hall_candidates(symbol: &str) -> Vec<&'static Setting> {
 
 /// The setting of a Hermann–Mauguin symbol; a number or a Hall symbol in its place is understood as well.
 pub(super) fn by_symbol(symbol: &str, cell: &UnitCell) -> Result<Choice, SymmetryError> {
-    if let Ok(number) = symbol.trim().parse::<u16>() {
-        return by_number(number, cell);
-    }
     let written = Written::new(symbol);
-    let named: Vec<&Setting> =
-        settings::all().iter().filter(|s| s.spellings.iter().any(|spelling| written.reads_as(spelling))).collect();
+    let named: Vec<&Setting> = match written.compact().parse::<u16>() {
+        Ok(number) if !(1..=230).contains(&number) => return Err(SymmetryError::UnknownNumber(number)),
+        Ok(number) => settings::all().iter().filter(|s| s.number == number).collect(),
+        Err(_) => {
+            settings::all().iter().filter(|s| s.spellings.iter().any(|spelling| written.reads_as(spelling))).collect()
+        }
+    };
     if named.is_empty() {
         return match hall_candidates(symbol) {
             none if none.is_empty() => Err(SymmetryError::UnknownSymbol(Box::new(UnknownSymbol {
@@ -109,7 +111,7 @@ fn misfit(asked: &str, candidates: &[&'static Setting], cell: &UnitCell) -> Symm
     let Some(first) = ranked.first() else {
         return SymmetryError::UnknownHall { symbol: asked.to_owned(), nearest: String::new() };
     };
-    let group = format!("{} ({})", first.full, first.number);
+    let group = format!("{} ({})", first.short, first.number);
     let [a, b, c] = cell.lengths();
     let [alpha, beta, gamma] = cell.angles_deg();
     if ranked.iter().any(|s| s.constraint != first.constraint) && ranked.iter().all(|s| s.unique_axis().is_none()) {
