@@ -1,6 +1,7 @@
 use nalgebra::Vector3;
 
 use super::chain::Chain;
+use super::detector::{DetectorArm, DetectorPlace};
 use super::solver::Freedom;
 use crate::frames::HalfAngle;
 use crate::frames::subproblem::{CLOSING_TOLERANCE_RAD, Dial, opening_of, turn};
@@ -24,6 +25,8 @@ pub(super) struct Bisecting {
     sum: (f64, f64),
     outer_bearing: Bearing,
     inner_bearing: Bearing,
+    /// The reference axis stands at the same angle from Q̂ for both signs of the detector, so the triangles are shared.
+    both_signs_alike: bool,
 }
 
 /// Angles of the three axes.
@@ -35,12 +38,23 @@ pub(super) struct BisectingAngles {
     pub freedom: Freedom,
 }
 
-/// The side of Q̂ and the sign of the opening, as bits of a branch number.
-pub(super) const SIDES: [f64; 2] = [1.0, -1.0];
+/// The triangle a₁, a₂, a₃ for one side of Q̂: all that does not depend on where Q̂ stands about a₁.
+#[derive(Debug, Clone, Copy)]
+struct Triangle {
+    opening_rad: f64,
+    /// Bearing of the spindle about the reference axis, and of the reference axis about the spindle, at opening +.
+    outer_rad: f64,
+    inner_rad: f64,
+    /// Whether ζ points to the other side of a₁ than Q̂ does.
+    beyond: bool,
+    only_sum_fixed: bool,
+}
+
+const PLUS_MINUS: [f64; 2] = [1.0, -1.0];
 
 impl Bisecting {
     /// For a chain of three axes, neither neighbours parallel.
-    pub fn new(chain: &Chain) -> Option<Self> {
+    pub fn new(chain: &Chain, arm: &DetectorArm) -> Option<Self> {
         let [a1, a2, a3] = chain.directions[..] else { return None };
         let (first, second) = (HalfAngle::between(&a1, &a2), HalfAngle::between(&a2, &a3));
         if first.full_sin() < 1e-6 || second.full_sin() < 1e-6 {
@@ -56,51 +70,75 @@ impl Bisecting {
             sum,
             outer_bearing: Bearing::new(first, second, difference.0, sum.1),
             inner_bearing: Bearing::new(second, first, -difference.0, sum.1),
+            both_signs_alike: arm.sideways().dot(&a1).abs() < 1e-14,
         })
     }
 
-    /// The four ways to bring the direction `carried` onto `q` (unit vectors), in the order κ = +1, −1 and within it
-    /// opening +, −: `found` gets the number of the way and its angles or by how many radians it misses.
+    /// The four ways to bring the direction `carried` (a unit vector) onto Q̂ for each place of the detector, in the order
+    /// κ = +1, −1 and within it opening +, −: `found` gets the numbers of place and way, and the angles or by how many
+    /// radians they miss.
     #[inline]
     pub fn each(
         &self,
         carried: &Vector3<f64>,
-        q: &Vector3<f64>,
-        mut found: impl FnMut(u8, Result<BisectingAngles, f64>),
+        places: &[DetectorPlace; 2],
+        mut found: impl FnMut(u8, u8, Result<BisectingAngles, f64>),
     ) {
-        let mu = HalfAngle::between(q, &self.outer.axis);
         let rho = HalfAngle::between(carried, &self.inner.axis);
-        let (q_across, carried_across) = (self.outer.across(q), self.inner.across(carried));
+        let [cx, cy] = self.inner.across(carried);
+        let carried_rad = cy.atan2(cx);
         let spindle_free = rho.full_sin() < ALONG_AXIS;
-        for (i, kappa) in SIDES.into_iter().enumerate() {
-            let (s, c) = if kappa > 0.0 { mu.half_sum(rho) } else { mu.half_difference(rho) };
-            let sign = if s * c < 0.0 { -1.0 } else { 1.0 };
-            let zeta = HalfAngle { sin: s.abs(), cos: c.abs() };
-            let number = 2 * i as u8;
-            let open = match opening_of(self.difference, self.sum, zeta) {
-                Ok(open) => open,
-                Err(miss) => {
-                    found(number, Err(miss.by_rad));
-                    found(number + 1, Err(miss.by_rad));
-                    continue;
+        let mut triangles = self.triangles(&places[0].q, rho);
+        for (sign, place) in places.iter().enumerate() {
+            if sign > 0 && !self.both_signs_alike {
+                triangles = self.triangles(&place.q, rho);
+            }
+            let [qx, qy] = self.outer.across(&place.q);
+            let q_rad = qy.atan2(qx);
+            for (i, triangle) in triangles.iter().enumerate() {
+                for (j, side) in PLUS_MINUS.into_iter().enumerate() {
+                    let result = triangle.map(|t| {
+                        let outer = q_rad + half_turn_if(t.beyond) + side * t.outer_rad;
+                        let inner = side * t.inner_rad + half_turn_if(t.beyond != (i == 1)) - carried_rad;
+                        let freedom = match (spindle_free, t.only_sum_fixed) {
+                            (true, _) => Freedom::InnerAxis,
+                            (false, true) => Freedom::OnlySumFixed,
+                            (false, false) => Freedom::None,
+                        };
+                        let inner = if spindle_free { 0.0 } else { inner };
+                        BisectingAngles { angles_rad: [outer, self.middle_zero + side * t.opening_rad, inner], freedom }
+                    });
+                    found(sign as u8, (2 * i + j) as u8, result);
                 }
-            };
-            let opening_rad = open.angle();
-            let freedom = match (spindle_free, zeta.full_sin() < ALONG_AXIS) {
-                (true, _) => Freedom::InnerAxis,
-                (false, true) => Freedom::OnlySumFixed,
-                (false, false) => Freedom::None,
-            };
-            for (j, side) in SIDES.into_iter().enumerate() {
-                let at_outer = self.outer_bearing.at(open, -side);
-                let at_inner = self.inner_bearing.at(open, side);
-                let t1 = turn(at_outer, q_across.map(|x| sign * x));
-                let t3 = turn(carried_across, at_inner.map(|x| kappa * sign * x));
-                let angles_rad = [t1, self.middle_zero + side * opening_rad, if spindle_free { 0.0 } else { t3 }];
-                found(number + j as u8, Ok(BisectingAngles { angles_rad, freedom }));
             }
         }
     }
+
+    /// The triangles for κ = +1 and −1.
+    #[inline]
+    fn triangles(&self, q: &Vector3<f64>, rho: HalfAngle) -> [Result<Triangle, f64>; 2] {
+        let mu = HalfAngle::between(q, &self.outer.axis);
+        [self.triangle(mu.half_sum(rho)), self.triangle(mu.half_difference(rho))]
+    }
+
+    /// The triangle for ζ, given as sine and cosine of its half; ζ may lie anywhere between −π and 2π.
+    #[inline]
+    fn triangle(&self, (s, c): (f64, f64)) -> Result<Triangle, f64> {
+        let zeta = HalfAngle { sin: s.abs(), cos: c.abs() };
+        let open = opening_of(self.difference, self.sum, zeta).map_err(|miss| miss.by_rad)?;
+        Ok(Triangle {
+            opening_rad: open.angle(),
+            outer_rad: self.outer_bearing.angle_rad(open),
+            inner_rad: self.inner_bearing.angle_rad(open),
+            beyond: s * c < 0.0,
+            only_sum_fixed: zeta.full_sin() < ALONG_AXIS,
+        })
+    }
+}
+
+#[inline]
+fn half_turn_if(condition: bool) -> f64 {
+    if condition { std::f64::consts::PI } else { 0.0 }
 }
 
 /// The direction in which one end of the triangle sees the other, as a function of the opening, with the factors that
@@ -133,16 +171,16 @@ impl Bearing {
         }
     }
 
-    /// Components along the middle axis and a quarter turn on; `side` is the sign of the second.
+    /// The bearing in radians at opening +, away from the middle axis; at opening − it is the opposite.
     #[inline]
-    fn at(self, open: HalfAngle, side: f64) -> [f64; 2] {
+    fn angle_rad(self, open: HalfAngle) -> f64 {
         match self {
             Self::Plain { start, along, across } => {
-                [start + along * open.sin * open.sin, side * across * open.sin * open.cos]
+                (across * open.sin * open.cos).atan2(start + along * open.sin * open.sin)
             }
-            Self::Equal { cosine } => [cosine * open.sin, side * open.cos],
-            Self::Supplementary { cosine } => [-cosine * open.cos, side * open.sin],
-            Self::Right => [0.0, side],
+            Self::Equal { cosine } => open.cos.atan2(cosine * open.sin),
+            Self::Supplementary { cosine } => open.sin.atan2(-cosine * open.cos),
+            Self::Right => std::f64::consts::FRAC_PI_2,
         }
     }
 }

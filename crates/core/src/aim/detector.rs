@@ -34,6 +34,11 @@ impl DetectorArm {
         Some(Self { sideways: sideways / sine, forward, sine })
     }
 
+    /// The direction to which a positive angle swings the detector, a unit vector.
+    pub fn sideways(&self) -> &Vector3<f64> {
+        &self.sideways
+    }
+
     /// Both places, the one at a positive angle first, for sin θ above 0.
     ///
     /// With ẑ·D(δ)ẑ = cos 2θ it follows that sin(δ/2) = sin θ / sin(axis, beam).

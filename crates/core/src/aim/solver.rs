@@ -2,7 +2,7 @@ use nalgebra::Vector3;
 
 use super::bisecting::Bisecting;
 use super::chain::Chain;
-use super::detector::DetectorArm;
+use super::detector::{DetectorArm, DetectorPlace};
 use super::pair::Pair;
 use super::rule::Rule;
 use crate::frames::{Head, Vector};
@@ -158,7 +158,7 @@ impl Solver {
         let method = match chain.indices.len() {
             2 => Method::Pair(Pair::new(&chain).ok_or_else(not_covered)?),
             3 if bisectable(instrument, &chain) => {
-                Method::Bisecting(Bisecting::new(&chain).ok_or(RuleError::NotBisectable)?)
+                Method::Bisecting(Bisecting::new(&chain, &arm).ok_or(RuleError::NotBisectable)?)
             }
             3 => return Err(RuleError::NotBisectable),
             _ => return Err(not_covered()),
@@ -205,11 +205,7 @@ impl Solver {
         }
         let carried = self.chain.held * (q_in_head.raw() / length);
         match self.arm.places(sin_theta.min(1.0)) {
-            Ok(places) => {
-                for (sign, place) in places.iter().enumerate() {
-                    self.sample_attempts(sign as u8, &carried, &place.q, place.angle_rad, &mut found);
-                }
-            }
+            Ok(places) => self.sample_attempts(&carried, &places, &mut found),
             Err(by_rad) => {
                 for branch in 0..self.branch_count() {
                     found(Attempt::CannotMake { branch: Branch(branch as u8), by_deg: by_rad.to_degrees() });
@@ -220,39 +216,25 @@ impl Solver {
     }
 
     #[inline]
-    fn sample_attempts(
-        &self,
-        sign: u8,
-        carried: &Vector3<f64>,
-        q: &Vector3<f64>,
-        detector_rad: f64,
-        found: &mut impl FnMut(Attempt),
-    ) {
+    fn sample_attempts(&self, carried: &Vector3<f64>, places: &[DetectorPlace; 2], found: &mut impl FnMut(Attempt)) {
         match &self.method {
-            Method::Bisecting(method) => method.each(carried, q, |way, result| {
-                let branch = Branch(4 * sign + way);
-                found(match result {
-                    Ok(a) => {
-                        let setting = self.setting(&a.angles_rad, detector_rad);
-                        Attempt::Setting { branch, setting, freedom: a.freedom }
-                    }
-                    Err(by_rad) => Attempt::CannotMake { branch, by_deg: by_rad.to_degrees() },
-                });
+            Method::Bisecting(method) => method.each(carried, places, |sign, way, result| {
+                let angle_rad = places[usize::from(sign)].angle_rad;
+                let result = result.map(|a| (self.setting(&a.angles_rad, angle_rad), a.freedom));
+                found(attempt(Branch(4 * sign + way), result));
             }),
-            Method::Pair(method) => match method.angles(carried, q) {
-                Ok(ways) => {
-                    for (i, way) in ways.iter().enumerate() {
-                        let branch = Branch(2 * sign + i as u8);
-                        let setting = self.setting(&way.angles_rad, detector_rad);
-                        found(Attempt::Setting { branch, setting, freedom: way.freedom });
+            Method::Pair(method) => {
+                for (sign, place) in places.iter().enumerate() {
+                    let ways = method.angles(carried, &place.q);
+                    for way in 0..2 {
+                        let result = ways.map(|ways| {
+                            let way = ways[usize::from(way)];
+                            (self.setting(&way.angles_rad, place.angle_rad), way.freedom)
+                        });
+                        found(attempt(Branch(2 * sign as u8 + way), result));
                     }
                 }
-                Err(by_rad) => {
-                    for i in 0..2 {
-                        found(Attempt::CannotMake { branch: Branch(2 * sign + i), by_deg: by_rad.to_degrees() });
-                    }
-                }
-            },
+            }
         }
     }
 
@@ -264,7 +246,15 @@ impl Solver {
         }
         let detector = self.axis_count - 1;
         readings[detector] = detector_rad.to_degrees() + self.zero_deg[detector];
-        Setting::new(&readings[..self.axis_count])
+        Setting::from_array(readings, self.axis_count)
+    }
+}
+
+#[inline]
+fn attempt(branch: Branch, result: Result<(Setting, Freedom), f64>) -> Attempt {
+    match result {
+        Ok((setting, freedom)) => Attempt::Setting { branch, setting, freedom },
+        Err(by_rad) => Attempt::CannotMake { branch, by_deg: by_rad.to_degrees() },
     }
 }
 

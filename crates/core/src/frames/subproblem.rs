@@ -82,11 +82,11 @@ pub fn opening_of(difference: (f64, f64), sum: (f64, f64), wanted: HalfAngle) ->
             return Err(Miss { by_rad });
         }
     }
-    let (near, far) = (near.max(0.0).sqrt(), far.max(0.0).sqrt());
-    let length = near.hypot(far);
+    let (near, far) = (near.max(0.0), far.max(0.0));
+    let length = near + far;
     // Both vanish where the carried direction lies along the inner axis: the turn is then free, and zero will do.
     if length > 0.0 {
-        Ok(HalfAngle { sin: near / length, cos: far / length })
+        Ok(HalfAngle { sin: (near / length).sqrt(), cos: (far / length).sqrt() })
     } else {
         Ok(HalfAngle { sin: 0.0, cos: 1.0 })
     }

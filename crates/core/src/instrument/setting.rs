@@ -18,7 +18,14 @@ impl Setting {
         Self { readings_deg: own, len: len as u8 }
     }
 
+    /// A setting of the first `len` of these readings in degrees.
+    #[inline]
+    pub(crate) fn from_array(readings_deg: [f64; MAX_AXES], len: usize) -> Self {
+        Self { readings_deg, len: len.min(MAX_AXES) as u8 }
+    }
+
     /// The readings in degrees.
+    #[inline]
     pub fn readings_deg(&self) -> &[f64] {
         &self.readings_deg[..usize::from(self.len)]
     }

@@ -91,6 +91,16 @@ impl Travel {
         best
     }
 
+    /// Degrees to the nearest limit of the representative that [`Self::check`] chooses.
+    #[inline]
+    pub fn clearance_deg(&self, reading_deg: f64) -> f64 {
+        match &self.spans[..] {
+            [] => f64::INFINITY,
+            [only] => only.check(reading_deg).clearance_deg,
+            several => several.iter().map(|s| s.check(reading_deg).clearance_deg).fold(f64::NEG_INFINITY, f64::max),
+        }
+    }
+
     /// Chooses among the reading + 360°k that lie inside the limits the one nearest to a position; the one that
     /// [`Self::check`] gives where none does.
     pub fn check_near(&self, reading_deg: f64, near_deg: f64) -> TravelCheck {

@@ -13,6 +13,7 @@ pub struct Judge {
     counts: [bool; MAX_AXES],
     preferred_deg: Option<[Option<f64>; MAX_AXES]>,
     cone_deg: f64,
+    sin_half_cone: f64,
 }
 
 /// A setting with its verdict.
@@ -55,6 +56,12 @@ const SAME_SETTING_DEG: f64 = 1e-5;
 /// A setting must be better by more than this, in degrees, to displace an earlier one: rounding decides no choice.
 const BETTER_BY_DEG: f64 = 1e-9;
 
+/// Where merits of settings that miss begin, far below that of any allowed one.
+const BELOW_ALL_ALLOWED: f64 = -1e6;
+
+/// Stands for the clearance of a machine without limits, so that comparisons stay defined.
+const MORE_THAN_ANY_LIMIT_DEG: f64 = 1e5;
+
 impl Judge {
     /// Prepares a machine under a set of rules and a preference.
     ///
@@ -77,7 +84,9 @@ impl Judge {
             }
         };
         let travel = instrument.axes().map(|axis| axis.travel.clone()).collect();
-        Ok(Self { solver, travel, counts, preferred_deg, cone_deg: instrument.direct_beam_half_angle_deg() })
+        let cone_deg = instrument.direct_beam_half_angle_deg();
+        let sin_half_cone = (0.5 * cone_deg).to_radians().sin();
+        Ok(Self { solver, travel, counts, preferred_deg, cone_deg, sin_half_cone })
     }
 
     /// The solver underneath.
@@ -107,19 +116,23 @@ impl Judge {
     /// The verdict on one reflection and the setting chosen.
     #[inline]
     pub fn verdict(&self, q_in_head: Vector<Head>, wavelength_angstrom: f64) -> Judgement {
-        let mut best: Option<(f64, JudgedSetting)> = None;
+        let mut best_merit = f64::NEG_INFINITY;
+        let mut best = None;
         let solved = self.solver.each_attempt(q_in_head, wavelength_angstrom, |attempt| {
-            let judged = self.judge(&attempt);
-            let merit = self.merit(&judged);
-            if best.as_ref().is_none_or(|(merit_before, _)| merit > merit_before + BETTER_BY_DEG) {
-                best = Some((merit, judged));
+            let merit = match &attempt {
+                Attempt::CannotMake { by_deg, .. } => BELOW_ALL_ALLOWED - by_deg,
+                Attempt::Setting { setting, .. } => self.merit(setting),
+            };
+            if merit > best_merit + BETTER_BY_DEG {
+                best_merit = merit;
+                best = Some(attempt);
             }
         });
         if let Err(outside) = solved {
             let longest_wavelength_angstrom = outside.longest_wavelength_angstrom;
             return Judgement { verdict: Verdict::OutsideSphere { longest_wavelength_angstrom }, setting: None };
         }
-        let Some((_, mut judged)) = best else {
+        let Some(mut judged) = best.map(|attempt| self.judge(&attempt)) else {
             return Judgement { verdict: Verdict::CannotMake { by_deg: 180.0 }, setting: None };
         };
         if let Some(verdict) = self.cone_verdict(q_in_head, wavelength_angstrom) {
@@ -131,7 +144,10 @@ impl Judge {
     /// The cone holds for every setting of a reflection, because it depends on 2θ alone.
     #[inline]
     fn cone_verdict(&self, q_in_head: Vector<Head>, wavelength_angstrom: f64) -> Option<Verdict> {
-        let sin_theta = (0.5 * wavelength_angstrom * q_in_head.norm()).min(1.0);
+        let sin_theta = 0.5 * wavelength_angstrom * q_in_head.norm();
+        if sin_theta > self.sin_half_cone {
+            return None;
+        }
         let by_deg = self.cone_deg - 2.0 * sin_theta.asin().to_degrees();
         (by_deg > LIMIT_DUST_DEG).then_some(Verdict::InDirectBeam { by_deg })
     }
@@ -177,17 +193,31 @@ impl Judge {
 
     /// What the preference makes of a setting, in degrees: more is better. Any allowed setting beats any that misses.
     #[inline]
-    fn merit(&self, judged: &JudgedSetting) -> f64 {
-        const BELOW_ALL_ALLOWED: f64 = -1e6;
-        match (judged.verdict.miss_deg(), &self.preferred_deg, &judged.setting) {
-            (Some(miss), _, _) => BELOW_ALL_ALLOWED - miss,
-            (None, Some(wanted), Some(setting)) => {
-                let turns = setting.readings_deg().iter().zip(wanted).map(|(r, w)| w.map_or(0.0, |w| (r - w).abs()));
-                -turns.fold(0.0, f64::max)
+    fn merit(&self, setting: &Setting) -> f64 {
+        let mut worst = f64::INFINITY;
+        let mut roomiest = MORE_THAN_ANY_LIMIT_DEG;
+        for (i, (travel, &reading)) in self.travel.iter().zip(setting.readings_deg()).enumerate() {
+            let clearance = travel.clearance_deg(reading);
+            worst = worst.min(clearance);
+            if self.counts[i] {
+                roomiest = roomiest.min(clearance);
             }
-            // An unlimited machine has infinite clearances everywhere: a large number keeps comparisons defined.
-            (None, _, _) => judged.clearance_deg.min(1e5),
         }
+        if worst < -LIMIT_DUST_DEG {
+            return BELOW_ALL_ALLOWED + worst;
+        }
+        match &self.preferred_deg {
+            None => roomiest,
+            Some(wanted) => self.nearness(setting, wanted),
+        }
+    }
+
+    /// Minus the largest turn in degrees from a wanted position.
+    fn nearness(&self, setting: &Setting, wanted: &[Option<f64>; MAX_AXES]) -> f64 {
+        let turns = setting.readings_deg().iter().zip(&self.travel).zip(wanted).map(|((&reading, travel), wanted)| {
+            wanted.map_or(0.0, |near| (travel.check_near(reading, near).reading_deg - near).abs())
+        });
+        -turns.fold(0.0, f64::max)
     }
 }
 
