@@ -1,0 +1,5 @@
+//! The window: one workplace from the inputs to the drive list.
+
+mod shared;
+
+pub use shared::{Picked, Reach, Results};
