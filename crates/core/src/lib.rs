@@ -7,6 +7,7 @@
 pub mod aim;
 pub mod conventions;
 pub mod crystal;
+pub mod exchange;
 pub mod frames;
 pub mod instrument;
 pub mod orient;
@@ -14,6 +15,7 @@ pub mod pace;
 pub mod quantity;
 pub mod radiation;
 pub mod reach;
+pub mod route;
 
 #[cfg(test)]
 mod testing;

@@ -1,4 +1,4 @@
-use super::{Approach, Axis, Instrument, Setting};
+use super::{Approach, Axis, Instrument, LIMIT_DUST_DEG, Setting};
 
 impl Axis {
     /// Seconds to go from one reading to another (degrees, taken as they stand: no full turns are added): path over
@@ -6,7 +6,8 @@ impl Axis {
     /// side goes beyond by the overshoot and returns.
     pub fn drive_s(&self, from_deg: f64, to_deg: f64) -> f64 {
         let path = to_deg - from_deg;
-        if path == 0.0 {
+        // Full turns added and taken away leave dust, which is no move.
+        if path.abs() <= LIMIT_DUST_DEG {
             return 0.0;
         }
         let beyond = match self.approach {
