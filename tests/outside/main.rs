@@ -9,6 +9,7 @@ mod cells_measured;
 mod diffraction;
 mod kappa_positions;
 mod kappa_relation;
+mod million_nodes;
 mod published_ub;
 mod radiation;
 mod standards;
