@@ -7,13 +7,15 @@ mod axis;
 mod description;
 mod drive;
 mod library;
+mod readings;
 mod setting;
 mod stack;
 mod travel;
 
 pub use axis::{Axis, AxisName, AxisNameError, RESERVED_COLUMNS};
-pub use description::{Approach, AxisDescription, Interval, Limits, MachineDescription, MachineProblem};
+pub use description::{Approach, AxisDescription, FormatVersion, Interval, Limits, MachineDescription, MachineProblem};
 pub use library::{BUILT_IN_MACHINES, built_in_machine};
+pub(crate) use readings::readings_without_doubles;
 pub use setting::{MAX_AXES, Setting};
 pub use stack::Instrument;
 pub(crate) use travel::{LIMIT_DUST_DEG, wrap_deg};

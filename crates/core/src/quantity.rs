@@ -3,6 +3,9 @@
 //! The message of a refusal says what was met and what would be accepted, so that the reader of a file can add no more
 //! than where it stood.
 
+use std::fmt;
+
+use serde::de::{Deserializer, Error, Visitor};
 use serde::{Deserialize, Serialize};
 
 /// A number that a quantity's check turned away.
@@ -15,11 +18,37 @@ pub struct QuantityError {
     pub accepted: &'static str,
 }
 
+/// Takes any number; for anything else the refusal says what the quantity accepts. (Asked for an `f64`, a format would
+/// answer with words of its own.)
+struct AnyNumber {
+    accepted: &'static str,
+}
+
+impl Visitor<'_> for AnyNumber {
+    type Value = f64;
+
+    fn expecting(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        f.write_str(self.accepted)
+    }
+
+    fn visit_f64<E: Error>(self, number: f64) -> Result<f64, E> {
+        Ok(number)
+    }
+
+    fn visit_i64<E: Error>(self, number: i64) -> Result<f64, E> {
+        Ok(number as f64)
+    }
+
+    fn visit_u64<E: Error>(self, number: u64) -> Result<f64, E> {
+        Ok(number as f64)
+    }
+}
+
 macro_rules! quantity {
     ($(#[$doc:meta])* $name:ident, $unit:literal, $accepted:literal, |$v:ident| $check:expr) => {
         $(#[$doc])*
-        #[derive(Debug, Clone, Copy, PartialEq, PartialOrd, Serialize, Deserialize)]
-        #[serde(try_from = "f64", into = "f64")]
+        #[derive(Debug, Clone, Copy, PartialEq, PartialOrd, Serialize)]
+        #[serde(into = "f64")]
         pub struct $name(f64);
 
         impl $name {
@@ -43,6 +72,13 @@ macro_rules! quantity {
             /// The number, in the type's unit.
             pub const fn get(self) -> f64 {
                 self.0
+            }
+        }
+
+        impl<'de> Deserialize<'de> for $name {
+            fn deserialize<D: Deserializer<'de>>(deserializer: D) -> Result<Self, D::Error> {
+                let number = deserializer.deserialize_any(AnyNumber { accepted: $accepted })?;
+                Self::new(number).map_err(D::Error::custom)
             }
         }
 

@@ -31,6 +31,7 @@ pub enum Preference {
     /// The one nearest to a given position: the largest of the degrees that each axis would turn is smallest.
     NearestTo {
         /// A reading in degrees for every axis that counts; axes left out do not.
+        #[serde(deserialize_with = "crate::instrument::readings_without_doubles")]
         readings_deg: std::collections::BTreeMap<AxisName, Degrees>,
     },
 }

@@ -45,7 +45,7 @@ impl Travel {
         }
         let mut spans = Vec::new();
         for (i, interval) in intervals.iter().enumerate() {
-            spans.push(Span::of(interval, approach, &format!("{path}[{i}]"))?);
+            spans.push(Span::of(interval, approach, &format!("{path}.Intervals[{i}]"))?);
         }
         let mut order: Vec<usize> = (0..intervals.len()).collect();
         order.sort_by(|&i, &j| intervals[i].from_deg.get().total_cmp(&intervals[j].from_deg.get()));
@@ -59,7 +59,7 @@ impl Travel {
                     low.from_deg.get(),
                     low.to_deg.get()
                 );
-                return Err(MachineProblem::new(format!("{path}[{}]", pair[1]), message));
+                return Err(MachineProblem::new(format!("{path}.Intervals[{}]", pair[1]), message));
             }
         }
         Ok(Self { spans })
@@ -241,8 +241,8 @@ mod tests {
     #[test]
     fn limits_the_wrong_way_round_or_overlapping_are_refused() {
         let refuse = |v: Vec<Interval>| Travel::new(&Limits::Intervals(v), None, "limits").unwrap_err();
-        assert_eq!(refuse(vec![interval(90.0, -90.0)]).path, "limits[0]");
-        assert_eq!(refuse(vec![interval(0.0, 90.0), interval(-20.0, 10.0)]).path, "limits[0]");
+        assert_eq!(refuse(vec![interval(90.0, -90.0)]).path, "limits.Intervals[0]");
+        assert_eq!(refuse(vec![interval(0.0, 90.0), interval(-20.0, 10.0)]).path, "limits.Intervals[0]");
         assert!(refuse(vec![]).message.contains("Endless"));
     }
 

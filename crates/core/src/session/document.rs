@@ -87,6 +87,7 @@ pub struct PeakDocument {
     /// Third index.
     pub l: Index,
     /// A reading in degrees for every axis of the machine.
+    #[serde(deserialize_with = "crate::instrument::readings_without_doubles")]
     pub readings_deg: BTreeMap<AxisName, Degrees>,
     /// Standard uncertainty of each reading, in degrees.
     #[serde(default, skip_serializing_if = "Option::is_none")]
@@ -151,7 +152,8 @@ pub struct OrientationDocument {
 }
 
 /// A 3×3 matrix, row by row.
-pub type Matrix = ((Component, Component, Component), (Component, Component, Component), (Component, Component, Component));
+pub type Matrix =
+    ((Component, Component, Component), (Component, Component, Component), (Component, Component, Component));
 
 /// The version of the session format that this program reads: 1.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize, Deserialize)]
@@ -166,7 +168,11 @@ impl FormatVersion {
 impl TryFrom<u32> for FormatVersion {
     type Error = String;
     fn try_from(number: u32) -> Result<Self, String> {
-        if number == 1 { Ok(Self(1)) } else { Err(format!("{number} is no version of the session format; accepted is 1")) }
+        if number == 1 {
+            Ok(Self(1))
+        } else {
+            Err(format!("{number} is no version of the session format; accepted is 1"))
+        }
     }
 }
 
