@@ -16,6 +16,7 @@ pub mod quantity;
 pub mod radiation;
 pub mod reach;
 pub mod route;
+pub mod session;
 
 #[cfg(test)]
 mod testing;
