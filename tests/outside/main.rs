@@ -7,6 +7,7 @@ mod busing_levy;
 mod cells;
 mod cells_measured;
 mod diffraction;
+mod kappa_list;
 mod kappa_positions;
 mod kappa_relation;
 mod million_nodes;

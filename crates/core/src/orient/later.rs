@@ -2,7 +2,8 @@ use super::near::nearest_within;
 use super::third::{LEAST_OUT_OF_PLANE_DEG, MISS_MARGIN, find_third, out_of_plane_deg, place_in};
 use super::two::check_sphere;
 use super::{
-    ALLOWED_SIGMAS, Compared, Observation, OrientError, OtherAssignment, Peak, Setup, Third, TwoPeakOrientation,
+    ALLOWED_SIGMAS, Compared, Observation, OrientError, OtherAssignment, OtherAssignments, Peak, Search, Setup, Third,
+    TwoPeakOrientation,
 };
 use crate::frames::{Head, Hkl, Vector};
 
@@ -103,6 +104,8 @@ pub enum Doubt {
     AllInPlane,
     /// Later peaks disagree; their positions among the peaks, counted from 0.
     Contradicted(Vec<usize>),
+    /// Later peaks agree, but so many nodes fit the first two that the search for other assignments was cut short.
+    NotAllCompared,
     /// Later peaks agree, but other assignments explain them too.
     OthersLeft {
         /// The indices that each of these gives to the first two peaks.
@@ -114,11 +117,11 @@ pub enum Doubt {
 pub(super) fn weigh(
     setup: &Setup,
     pair: &TwoPeakOrientation,
-    others: &[OtherAssignment],
+    others: &OtherAssignments,
     later: &[LaterPeak],
     reachable: &dyn Fn(Vector<Head>) -> bool,
 ) -> Confirmation {
-    let mut left: Vec<&OtherAssignment> = others.iter().collect();
+    let mut left: Vec<&OtherAssignment> = others.by_position.iter().collect();
     let mut by = Vec::new();
     for peak in later.iter().filter(|peak| peak.agrees() && peak.is_out_of_plane()) {
         let before = left.len();
@@ -137,6 +140,8 @@ pub(super) fn weigh(
         Doubt::NoThirdPeak
     } else if by.is_empty() {
         Doubt::AllInPlane
+    } else if others.search == Search::Cut {
+        Doubt::NotAllCompared
     } else if left.is_empty() {
         return Confirmation::Confirmed { by, too_alike: 0 };
     } else {

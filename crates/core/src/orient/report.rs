@@ -47,7 +47,7 @@ impl OrientationReport {
         let later = later.collect::<Result<Vec<_>, _>>()?;
         let mend = find_mend(setup, &pair);
         let others = find_others(setup, &pair);
-        let confirmation = weigh(setup, &pair, &others.by_position, &later, reachable);
+        let confirmation = weigh(setup, &pair, &others, &later, reachable);
         pair.orientation.confirmed = confirmation.is_confirmed();
         Ok(Self {
             radiation: setup.radiation.describe(),

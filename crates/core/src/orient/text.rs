@@ -61,7 +61,8 @@ impl OrientationReport {
             }
             Confirmation::Unconfirmed { because, next } => {
                 writeln!(page, "UNCONFIRMED: {}", self.doubt(because))?;
-                self.write_next(page, next)
+                // Wrong indices come first: a prediction from them would only send someone to the wrong place.
+                if *because == Doubt::PairDisagrees { Ok(()) } else { self.write_next(page, next) }
             }
         }
     }
@@ -72,13 +73,17 @@ impl OrientationReport {
             Doubt::PairDisagrees => "the two peaks do not fit their own indices.".to_owned(),
             Doubt::NoThirdPeak if others == 0 => "two peaks cannot prove themselves; a third must agree.".to_owned(),
             Doubt::NoThirdPeak => format!(
-                "two peaks cannot prove themselves; {} as well.",
+                "two peaks cannot prove themselves; {}{} as well.",
+                if self.others.search == Search::Cut { "at least " } else { "" },
                 counted(others, "other assignment fits", "other assignments fit")
             ),
             Doubt::AllInPlane => "no later peak is far enough out of the plane of the first two.".to_owned(),
             Doubt::Contradicted(peaks) => {
                 let names = listed(peaks.iter().filter_map(|&i| self.hkl_of(i)));
                 format!("{names} is not where this orientation puts it.")
+            }
+            Doubt::NotAllCompared => {
+                "later peaks agree, but so many other indices fit the first two that not all were compared.".to_owned()
             }
             Doubt::OthersLeft { assignments } => format!(
                 "later peaks agree, but {} them too.",
@@ -119,13 +124,14 @@ impl OrientationReport {
     fn write_peaks(&self, page: &mut String) -> std::fmt::Result {
         let pair = &self.pair;
         let both = [&pair.first, &pair.second];
+        writeln!(page)?;
         let mut row = |name: &str, of: [String; 2]| {
             let [a, b] = of;
             writeln!(page, "{}", format!("  {name:<NAMES$}{a:<PEAK$}{b}").trim_end())
         };
-        row("\n  Peaks", ["first".to_owned(), "second".to_owned()])?;
+        row("Peaks", ["first".to_owned(), "second".to_owned()])?;
         row("h k l", both.map(|peak| peak.hkl.to_string()))?;
-        row("met by U", ["exactly".to_owned(), format!("in its plane, {:+.3}° off", pair.angle_deg.misfit())])?;
+        row("met by U", ["exactly".to_owned(), format!("in its plane, {}° off", signed(pair.angle_deg.misfit(), 3))])?;
         row("2θ observed", both.map(|peak| format!("{:.4}°", peak.two_theta_deg)))?;
         row("d observed", pair.d_angstrom.map(|d| format!("{:.5} ± {:.5} Å", d.observed, d.sigma)))?;
         row("d calculated", pair.d_angstrom.map(|d| format!("{:.5} Å", d.calculated)))?;
@@ -150,7 +156,7 @@ impl OrientationReport {
         )?;
         for peak in &self.later {
             let direction = format!("{:.3} ± {:.3}°", peak.direction_deg.misfit(), peak.direction_deg.sigma);
-            let d = format!("{:+.4} ± {:.4} Å", peak.d_angstrom.misfit(), peak.d_angstrom.sigma);
+            let d = format!("{} ± {:.4} Å", signed(peak.d_angstrom.misfit(), 4), peak.d_angstrom.sigma);
             let verdict = if peak.agrees() { "agrees" } else { "DISAGREES" };
             let name = peak.observation.hkl.to_string();
             let out = format!("{:.1}°", peak.out_of_plane_deg);
@@ -223,7 +229,7 @@ fn write_third(page: &mut String, third: &DecidingReflection) -> std::fmt::Resul
         writeln!(
             page,
             "Found there, it rules out {}.",
-            if third.of == 1 { "the other assignment" } else { "all of them" }
+            if third.of == 1 { "the other assignment" } else { "all that are known" }
         )?;
     }
     match miss {
@@ -246,7 +252,7 @@ fn write_rows(page: &mut String, matrix: &Matrix3<f64>, decimals: usize) -> std:
 fn write_assignments(page: &mut String, assignments: &[OtherAssignment]) -> std::fmt::Result {
     for other in assignments.iter().take(MOST_LISTED) {
         let [h, k] = other.hkl.map(|hkl| hkl.to_string());
-        writeln!(page, "    {h:<12} {k:<12} angle off {:+.3}°", other.fit.angle_deg)?;
+        writeln!(page, "    {h:<12} {k:<12} angle off {}°", signed(other.fit.angle_deg, 3))?;
     }
     match assignments.len().saturating_sub(MOST_LISTED) {
         0 => Ok(()),
@@ -258,14 +264,21 @@ fn change_text(change: &IndexChange) -> String {
     let names = ["first peak", "second peak"];
     let changed = (0..2).filter(|&i| change.kind[i] != ChangeKind::Kept);
     let parts: Vec<String> = changed.map(|i| format!("{} {} → {}", names[i], change.from[i], change.to[i])).collect();
-    let [d1, d2] = change.fit.d_angstrom;
-    format!("{}: angle then {:+.3}° off, d {d1:+.4} Å and {d2:+.4} Å", parts.join(", "), change.fit.angle_deg)
+    let [d1, d2] = change.fit.d_angstrom.map(|d| signed(d, 4));
+    let angle = signed(change.fit.angle_deg, 3);
+    format!("{}: angle then {angle}° off, d {d1} Å and {d2} Å", parts.join(", "))
 }
 
 fn misfit_text(compared: &Compared, decimals: usize, unit: &str) -> String {
     let space = if unit == "°" { "" } else { " " };
     let ratio = compared.misfit().abs() / compared.sigma.max(1e-12);
-    format!("{:+.decimals$}{space}{unit} ({ratio:.1} σ)", compared.misfit())
+    format!("{}{space}{unit} ({ratio:.1} σ)", signed(compared.misfit(), decimals))
+}
+
+/// A number with its sign, but a zero without.
+fn signed(x: f64, decimals: usize) -> String {
+    let text = format!("{x:+.decimals$}");
+    if text.chars().any(|c| c.is_ascii_digit() && c != '0') { text } else { format!("{:.decimals$}", 0.0) }
 }
 
 fn across_text(peak: &Observation) -> String {

@@ -153,3 +153,23 @@ fn the_page_begins_with_the_verdict_and_the_next_step() {
     let page = night.report(&[peaks[0], peaks[1], night.found(hkl, hkl, 0.02)]).render();
     assert!(page.starts_with("CONFIRMED"), "{page}");
 }
+
+/// A large cell read coarsely: hundreds of pairs of nodes fit, not all can be followed, and a third peak proves too little.
+#[test]
+fn a_search_that_was_cut_confirms_nothing() {
+    let night = Night::new([30.1, 33.3, 37.8, 91.0, 93.0, 105.0], SymmetryQuery::Number(1));
+    let found = |hkl| night.found(hkl, hkl, 0.1);
+    let report = night.report(&[found([14, 16, 20]), found([-10, 14, 26]), found([4, -5, 3])]);
+    assert_eq!(report.others.search, crate::orient::Search::Cut);
+    assert!(matches!(report.confirmation, Confirmation::Unconfirmed { because: Doubt::NotAllCompared, .. }));
+}
+
+#[test]
+fn a_page_about_wrong_indices_says_what_to_change_before_what_to_measure() {
+    let night = Night::new([5.1, 7.3, 9.8, 90.0, 90.0, 90.0], SymmetryQuery::Number(16));
+    let page =
+        night.report(&[night.found([2, 0, 1], [2, 0, 1], 0.02), night.found([2, 1, 0], [1, 2, 0], 0.02)]).render();
+    assert!(page.contains("second peak 1 2 0 → 2 1 0: angle then 0.000° off"), "{page}");
+    assert!(!page.contains("Measure"), "{page}");
+    assert!(page.lines().all(|line| line.trim_end() == line), "no line ends in blanks:\n{page}");
+}
