@@ -10,7 +10,7 @@ use std::process::Command;
 use std::time::Instant;
 
 use criterion::{BatchSize, Criterion};
-use nalgebra::{Matrix3, Rotation3};
+use nalgebra::{Matrix3, Rotation3, Unit, Vector3};
 use ringwright_core::aim::{Preference, Rule};
 use ringwright_core::crystal::{AbsentNodes, DRange, NodesOutcome, SpaceGroup, SymmetryQuery, UnitCell, nodes};
 use ringwright_core::frames::Hkl;
@@ -28,7 +28,7 @@ struct Case {
     judge: Judge,
 }
 
-/// U is Rz(0.7) Ry(0.5) Rx(0.3), angles in radians; the script uses the same.
+/// U is Ry(20°) Rz(35°) Rx(50°), as in the script.
 fn case(machine: &str) -> Case {
     let cell = UnitCell::new(30.0, 30.0, 30.0, 90.0, 90.0, 90.0).unwrap();
     let group = SpaceGroup::resolve(&SymmetryQuery::Number(1), &cell).unwrap();
@@ -38,7 +38,9 @@ fn case(machine: &str) -> Case {
     let hkl: Vec<Hkl> = columns.hkl.iter().map(|&hkl| Hkl::from(hkl)).collect();
     let instrument = built_in_machine(machine).unwrap();
     let judge = Judge::new(&instrument, &[Rule::Bisecting], &Preference::default()).unwrap();
-    let ub = Rotation3::from_euler_angles(0.3, 0.5, 0.7).matrix() * cell.b_matrix();
+    let turn = |axis: Unit<Vector3<f64>>, deg: f64| Rotation3::from_axis_angle(&axis, deg.to_radians());
+    let u = turn(Vector3::y_axis(), 20.0) * turn(Vector3::z_axis(), 35.0) * turn(Vector3::x_axis(), 50.0);
+    let ub = u.matrix() * cell.b_matrix();
     Case { wanted: Wanted { absent: vec![None; hkl.len()], hkl }, ub, instrument, judge }
 }
 
