@@ -8,9 +8,11 @@
 //! Whatever depends on the stack alone is computed once, in [`Solver::new`]. Axis vectors are data: a new machine is a
 //! file, never a new solver.
 
+mod attempts;
 mod bisecting;
 mod chain;
 mod detector;
+mod fit;
 mod pair;
 mod rule;
 mod solver;
@@ -18,5 +20,8 @@ mod solver;
 #[allow(clippy::unwrap_used)]
 mod tests;
 
+pub(crate) use attempts::MAX_BRANCHES;
+pub use attempts::{Attempt, Attempts, Branch, Freedom};
+pub use fit::RuleError;
 pub use rule::{Preference, Rule};
-pub use solver::{Attempt, Branch, Freedom, OutsideSphere, RuleError, Solver};
+pub use solver::{OutsideSphere, Solver};

@@ -1,8 +1,9 @@
 use nalgebra::Vector3;
 
+use super::attempts::{Attempts, Freedom, MAX_BRANCHES};
 use super::chain::Chain;
 use super::detector::{DetectorArm, DetectorPlace};
-use super::solver::Freedom;
+
 use crate::frames::HalfAngle;
 use crate::frames::subproblem::{CLOSING_TOLERANCE_RAD, Dial, opening_of, turn};
 
@@ -19,8 +20,8 @@ const ALONG_AXIS: f64 = 1e-9;
 pub(super) struct Bisecting {
     outer: Dial,
     inner: Dial,
-    /// The middle angle at which the spindle stands nearest to the reference axis.
-    middle_zero: f64,
+    /// The middle angle in degrees at which the spindle stands nearest to the reference axis.
+    middle_zero_deg: f64,
     difference: (f64, f64),
     sum: (f64, f64),
     outer_bearing: Bearing,
@@ -29,28 +30,19 @@ pub(super) struct Bisecting {
     both_signs_alike: bool,
 }
 
-/// Angles of the three axes.
-#[derive(Debug, Clone, Copy)]
-pub(super) struct BisectingAngles {
-    /// Outer, middle and inner angle in radians.
-    pub angles_rad: [f64; 3],
-    /// What was free.
-    pub freedom: Freedom,
-}
-
-/// The triangle a₁, a₂, a₃ for one side of Q̂: all that does not depend on where Q̂ stands about a₁.
+/// The triangle a₁, a₂, a₃ for one side of Q̂: all that does not depend on where Q̂ stands about a₁. Angles in degrees.
 #[derive(Debug, Clone, Copy)]
 struct Triangle {
-    opening_rad: f64,
+    /// By how much it fails to close; 0 if it closes.
+    miss_deg: f64,
+    opening_deg: f64,
     /// Bearing of the spindle about the reference axis, and of the reference axis about the spindle, at opening +.
-    outer_rad: f64,
-    inner_rad: f64,
+    outer_deg: f64,
+    inner_deg: f64,
     /// Whether ζ points to the other side of a₁ than Q̂ does.
     beyond: bool,
     only_sum_fixed: bool,
 }
-
-const PLUS_MINUS: [f64; 2] = [1.0, -1.0];
 
 impl Bisecting {
     /// For a chain of three axes, neither neighbours parallel.
@@ -65,7 +57,7 @@ impl Bisecting {
         Some(Self {
             outer: Dial::new(a1, &a2),
             inner: Dial::new(a3, &a2),
-            middle_zero: turn(middle.across(&a3), [1.0, 0.0]),
+            middle_zero_deg: turn(middle.across(&a3), [1.0, 0.0]).to_degrees(),
             difference,
             sum,
             outer_bearing: Bearing::new(first, second, difference.0, sum.1),
@@ -74,71 +66,78 @@ impl Bisecting {
         })
     }
 
-    /// The four ways to bring the direction `carried` (a unit vector) onto Q̂ for each place of the detector, in the order
-    /// κ = +1, −1 and within it opening +, −: `found` gets the numbers of place and way, and the angles or by how many
-    /// radians they miss.
+    /// The four ways to bring the direction `carried` (a unit vector) onto Q̂ for each place of the detector: κ = +1, −1
+    /// and within it opening +, −. Fills the rows of the three axes, without their zero offsets.
     #[inline]
-    pub fn each(
-        &self,
-        carried: &Vector3<f64>,
-        places: &[DetectorPlace; 2],
-        mut found: impl FnMut(u8, u8, Result<BisectingAngles, f64>),
-    ) {
+    pub fn solve(&self, carried: &Vector3<f64>, places: &[DetectorPlace; 2], axes: &[usize], attempts: &mut Attempts) {
         let rho = HalfAngle::between(carried, &self.inner.axis);
         let [cx, cy] = self.inner.across(carried);
-        let carried_rad = cy.atan2(cx);
+        let carried_deg = cy.atan2(cx).to_degrees();
         let spindle_free = rho.full_sin() < ALONG_AXIS;
+        let (mut outer, mut middle, mut inner) = ([0.0; MAX_BRANCHES], [0.0; MAX_BRANCHES], [0.0; MAX_BRANCHES]);
         let mut triangles = self.triangles(&places[0].q, rho);
         for (sign, place) in places.iter().enumerate() {
             if sign > 0 && !self.both_signs_alike {
                 triangles = self.triangles(&place.q, rho);
             }
             let [qx, qy] = self.outer.across(&place.q);
-            let q_rad = qy.atan2(qx);
-            for (i, triangle) in triangles.iter().enumerate() {
-                for (j, side) in PLUS_MINUS.into_iter().enumerate() {
-                    let result = triangle.map(|t| {
-                        let outer = q_rad + half_turn_if(t.beyond) + side * t.outer_rad;
-                        let inner = side * t.inner_rad + half_turn_if(t.beyond != (i == 1)) - carried_rad;
-                        let freedom = match (spindle_free, t.only_sum_fixed) {
-                            (true, _) => Freedom::InnerAxis,
-                            (false, true) => Freedom::OnlySumFixed,
-                            (false, false) => Freedom::None,
-                        };
-                        let inner = if spindle_free { 0.0 } else { inner };
-                        BisectingAngles { angles_rad: [outer, self.middle_zero + side * t.opening_rad, inner], freedom }
-                    });
-                    found(sign as u8, (2 * i + j) as u8, result);
+            let q_deg = qy.atan2(qx).to_degrees();
+            for (i, t) in triangles.iter().enumerate() {
+                let at_outer = q_deg + half_turn_if(t.beyond);
+                let at_inner = half_turn_if(t.beyond != (i == 1)) - carried_deg;
+                let branch = 4 * sign + 2 * i;
+                (outer[branch], outer[branch + 1]) = (at_outer + t.outer_deg, at_outer - t.outer_deg);
+                middle[branch] = self.middle_zero_deg + t.opening_deg;
+                middle[branch + 1] = self.middle_zero_deg - t.opening_deg;
+                (inner[branch], inner[branch + 1]) = (at_inner + t.inner_deg, at_inner - t.inner_deg);
+                let freedom = match (spindle_free, t.only_sum_fixed) {
+                    (true, _) => Freedom::InnerAxis,
+                    (false, true) => Freedom::OnlySumFixed,
+                    (false, false) => Freedom::None,
+                };
+                for way in [branch, branch + 1] {
+                    attempts.miss_deg[way] = t.miss_deg;
+                    attempts.freedom[way] = freedom;
                 }
             }
+        }
+        if spindle_free {
+            inner = [0.0; MAX_BRANCHES];
+        }
+        for (&axis, row) in axes.iter().zip([outer, middle, inner]) {
+            attempts.readings_deg[axis] = row;
         }
     }
 
     /// The triangles for κ = +1 and −1.
     #[inline]
-    fn triangles(&self, q: &Vector3<f64>, rho: HalfAngle) -> [Result<Triangle, f64>; 2] {
+    fn triangles(&self, q: &Vector3<f64>, rho: HalfAngle) -> [Triangle; 2] {
         let mu = HalfAngle::between(q, &self.outer.axis);
         [self.triangle(mu.half_sum(rho)), self.triangle(mu.half_difference(rho))]
     }
 
     /// The triangle for ζ, given as sine and cosine of its half; ζ may lie anywhere between −π and 2π.
     #[inline]
-    fn triangle(&self, (s, c): (f64, f64)) -> Result<Triangle, f64> {
+    fn triangle(&self, (s, c): (f64, f64)) -> Triangle {
         let zeta = HalfAngle { sin: s.abs(), cos: c.abs() };
-        let open = opening_of(self.difference, self.sum, zeta).map_err(|miss| miss.by_rad)?;
-        Ok(Triangle {
-            opening_rad: open.angle(),
-            outer_rad: self.outer_bearing.angle_rad(open),
-            inner_rad: self.inner_bearing.angle_rad(open),
+        let (open, miss_deg) = match opening_of(self.difference, self.sum, zeta) {
+            Ok(open) => (open, 0.0),
+            Err(miss) => (HalfAngle { sin: 0.0, cos: 1.0 }, miss.by_rad.to_degrees()),
+        };
+        Triangle {
+            miss_deg,
+            opening_deg: open.angle().to_degrees(),
+            outer_deg: self.outer_bearing.angle_rad(open).to_degrees(),
+            inner_deg: self.inner_bearing.angle_rad(open).to_degrees(),
             beyond: s * c < 0.0,
             only_sum_fixed: zeta.full_sin() < ALONG_AXIS,
-        })
+        }
     }
 }
 
 #[inline]
 fn half_turn_if(condition: bool) -> f64 {
-    if condition { std::f64::consts::PI } else { 0.0 }
+    if condition { 180.0 } else { 0.0 }
 }
 
 /// The direction in which one end of the triangle sees the other, as a function of the opening, with the factors that

@@ -1,7 +1,8 @@
 use nalgebra::Vector3;
 
+use super::attempts::{Attempts, Freedom};
 use super::chain::Chain;
-use super::solver::Freedom;
+use super::detector::DetectorPlace;
 use crate::frames::HalfAngle;
 use crate::frames::subproblem::{Dial, bearing, opening, turn};
 
@@ -18,11 +19,11 @@ pub(super) struct Pair {
 
 /// One of the two ways to set the pair.
 #[derive(Debug, Clone, Copy)]
-pub(super) struct PairAngles {
+struct PairAngles {
     /// Angles of outer and inner axis in radians.
-    pub angles_rad: [f64; 2],
+    angles_rad: [f64; 2],
     /// What was free.
-    pub freedom: Freedom,
+    freedom: Freedom,
 }
 
 impl Pair {
@@ -32,11 +33,32 @@ impl Pair {
         Some(Self { outer: Dial::new(a1, &a2), inner: Dial::new(a2, &a1), between: HalfAngle::between(&a1, &a2) })
     }
 
+    /// Both ways to take the direction `carried` (a unit vector) onto Q̂ for each place of the detector. Fills the rows of
+    /// the two axes, without their zero offsets.
+    pub fn solve(&self, carried: &Vector3<f64>, places: &[DetectorPlace; 2], axes: &[usize], attempts: &mut Attempts) {
+        for (sign, place) in places.iter().enumerate() {
+            let ways = self.angles(carried, &place.q);
+            for way in 0..2 {
+                let branch = 2 * sign + way;
+                match ways {
+                    Err(by_rad) => attempts.miss_deg[branch] = by_rad.to_degrees(),
+                    Ok(ways) => {
+                        attempts.miss_deg[branch] = 0.0;
+                        attempts.freedom[branch] = ways[way].freedom;
+                        for (&axis, angle) in axes.iter().zip(ways[way].angles_rad) {
+                            attempts.readings_deg[axis][branch] = angle.to_degrees();
+                        }
+                    }
+                }
+            }
+        }
+    }
+
     /// Both ways (side +1, side −1) to take `carried` to `target`, unit vectors.
     ///
     /// # Errors
     /// By how many radians the target is out of reach.
-    pub fn angles(&self, carried: &Vector3<f64>, target: &Vector3<f64>) -> Result<[PairAngles; 2], f64> {
+    fn angles(&self, carried: &Vector3<f64>, target: &Vector3<f64>) -> Result<[PairAngles; 2], f64> {
         let arm = HalfAngle::between(&self.inner.axis, carried);
         let wanted = HalfAngle::between(&self.outer.axis, target);
         let open = opening(self.between, arm, wanted).map_err(|miss| miss.by_rad)?;

@@ -91,14 +91,17 @@ impl Travel {
         best
     }
 
-    /// Degrees to the nearest limit of the representative that [`Self::check`] chooses.
+    /// Degrees to the nearest limit of the representative that [`Self::check`] chooses, for several readings at once.
     #[inline]
-    pub fn clearance_deg(&self, reading_deg: f64) -> f64 {
-        match &self.spans[..] {
-            [] => f64::INFINITY,
-            [only] => only.check(reading_deg).clearance_deg,
-            several => several.iter().map(|s| s.check(reading_deg).clearance_deg).fold(f64::NEG_INFINITY, f64::max),
+    pub fn clearances_deg<const N: usize>(&self, readings_deg: &[f64; N]) -> [f64; N] {
+        let Some((first, rest)) = self.spans.split_first() else { return [f64::INFINITY; N] };
+        let mut clearances = readings_deg.map(|reading| first.check(reading).clearance_deg);
+        for span in rest {
+            for (clearance, &reading) in clearances.iter_mut().zip(readings_deg) {
+                *clearance = clearance.max(span.check(reading).clearance_deg);
+            }
         }
+        clearances
     }
 
     /// Chooses among the reading + 360°k that lie inside the limits the one nearest to a position; the one that

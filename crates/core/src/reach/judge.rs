@@ -1,4 +1,6 @@
-use crate::aim::{Attempt, Branch, Freedom, OutsideSphere, Preference, Rule, RuleError, Solver};
+use crate::aim::{
+    Attempt, Attempts, Branch, Freedom, MAX_BRANCHES, OutsideSphere, Preference, Rule, RuleError, Solver,
+};
 use crate::frames::{Head, Vector};
 use crate::instrument::{Instrument, LIMIT_DUST_DEG, MAX_AXES, Setting, Travel};
 
@@ -11,6 +13,7 @@ pub struct Judge {
     travel: Vec<Travel>,
     /// Whether an axis counts in the measure *farthest from every limit*: moving sample axes do.
     counts: [bool; MAX_AXES],
+    limited: Vec<LimitedAxis>,
     preferred_deg: Option<[Option<f64>; MAX_AXES]>,
     cone_deg: f64,
     sin_half_cone: f64,
@@ -83,10 +86,14 @@ impl Judge {
                 Some(wanted)
             }
         };
-        let travel = instrument.axes().map(|axis| axis.travel.clone()).collect();
+        let travel: Vec<Travel> = instrument.axes().map(|axis| axis.travel.clone()).collect();
+        let limited = |(axis, travel): (usize, &Travel)| {
+            (!travel.is_endless()).then(|| LimitedAxis { axis, counts: counts[axis], travel: travel.clone() })
+        };
+        let limited = travel.iter().enumerate().filter_map(limited).collect();
         let cone_deg = instrument.direct_beam_half_angle_deg();
         let sin_half_cone = (0.5 * cone_deg).to_radians().sin();
-        Ok(Self { solver, travel, counts, preferred_deg, cone_deg, sin_half_cone })
+        Ok(Self { solver, travel, counts, limited, preferred_deg, cone_deg, sin_half_cone })
     }
 
     /// The solver underneath.
@@ -113,32 +120,30 @@ impl Judge {
         }
     }
 
-    /// The verdict on one reflection and the setting chosen.
+    /// The verdict on one reflection and the setting chosen. `attempts` is room made by [`Solver::attempts`].
     #[inline]
-    pub fn verdict(&self, q_in_head: Vector<Head>, wavelength_angstrom: f64) -> Judgement {
-        let mut best_merit = f64::NEG_INFINITY;
-        let mut best = None;
-        let solved = self.solver.each_attempt(q_in_head, wavelength_angstrom, |attempt| {
-            let merit = match &attempt {
-                Attempt::CannotMake { by_deg, .. } => BELOW_ALL_ALLOWED - by_deg,
-                Attempt::Setting { setting, .. } => self.merit(setting),
-            };
-            if merit > best_merit + BETTER_BY_DEG {
-                best_merit = merit;
-                best = Some(attempt);
-            }
-        });
-        if let Err(outside) = solved {
+    pub fn verdict_in(&self, q_in_head: Vector<Head>, wavelength_angstrom: f64, attempts: &mut Attempts) -> Judgement {
+        if let Err(outside) = self.solver.solve(q_in_head, wavelength_angstrom, attempts) {
             let longest_wavelength_angstrom = outside.longest_wavelength_angstrom;
             return Judgement { verdict: Verdict::OutsideSphere { longest_wavelength_angstrom }, setting: None };
         }
-        let Some(mut judged) = best.map(|attempt| self.judge(&attempt)) else {
-            return Judgement { verdict: Verdict::CannotMake { by_deg: 180.0 }, setting: None };
-        };
+        let merits = self.merits(attempts);
+        let (mut best, mut best_merit) = (0, merits[0]);
+        for (branch, &merit) in merits.iter().enumerate().take(attempts.count).skip(1) {
+            if merit > best_merit + BETTER_BY_DEG {
+                (best, best_merit) = (branch, merit);
+            }
+        }
+        let mut judged = self.judge(&attempts.get(best));
         if let Some(verdict) = self.cone_verdict(q_in_head, wavelength_angstrom) {
             judged.verdict = verdict;
         }
         Judgement { verdict: judged.verdict, setting: Some(judged) }
+    }
+
+    /// [`Self::verdict_in`] with room made for the purpose.
+    pub fn verdict(&self, q_in_head: Vector<Head>, wavelength_angstrom: f64) -> Judgement {
+        self.verdict_in(q_in_head, wavelength_angstrom, &mut self.solver.attempts())
     }
 
     /// The cone holds for every setting of a reflection, because it depends on 2θ alone.
@@ -191,25 +196,33 @@ impl Judge {
         JudgedSetting { branch, setting: Some(Setting::new(&readings[..given.len()])), freedom, verdict, clearance_deg }
     }
 
-    /// What the preference makes of a setting, in degrees: more is better. Any allowed setting beats any that misses.
+    /// What the preference makes of each branch, in degrees: more is better. Any allowed setting beats any that misses.
     #[inline]
-    fn merit(&self, setting: &Setting) -> f64 {
-        let mut worst = f64::INFINITY;
-        let mut roomiest = MORE_THAN_ANY_LIMIT_DEG;
-        for (i, (travel, &reading)) in self.travel.iter().zip(setting.readings_deg()).enumerate() {
-            let clearance = travel.clearance_deg(reading);
-            worst = worst.min(clearance);
-            if self.counts[i] {
-                roomiest = roomiest.min(clearance);
+    fn merits(&self, attempts: &Attempts) -> [f64; MAX_BRANCHES] {
+        let mut worst = [MORE_THAN_ANY_LIMIT_DEG; MAX_BRANCHES];
+        let mut roomiest = [MORE_THAN_ANY_LIMIT_DEG; MAX_BRANCHES];
+        for limited in &self.limited {
+            let clearance = limited.travel.clearances_deg(&attempts.readings_deg[limited.axis]);
+            for branch in 0..MAX_BRANCHES {
+                worst[branch] = smaller(worst[branch], clearance[branch]);
+                if limited.counts {
+                    roomiest[branch] = smaller(roomiest[branch], clearance[branch]);
+                }
             }
         }
-        if worst < -LIMIT_DUST_DEG {
-            return BELOW_ALL_ALLOWED + worst;
+        let mut merits = [0.0; MAX_BRANCHES];
+        for (branch, merit) in merits.iter_mut().enumerate() {
+            let worst = smaller(worst[branch], -attempts.miss_deg[branch]);
+            *merit = if worst < -LIMIT_DUST_DEG { BELOW_ALL_ALLOWED + worst } else { roomiest[branch] };
         }
-        match &self.preferred_deg {
-            None => roomiest,
-            Some(wanted) => self.nearness(setting, wanted),
+        if let Some(wanted) = &self.preferred_deg {
+            for (branch, merit) in merits.iter_mut().enumerate().take(attempts.count) {
+                if let (true, Attempt::Setting { setting, .. }) = (*merit > 0.5 * BELOW_ALL_ALLOWED, attempts.get(branch)) {
+                    *merit = self.nearness(&setting, wanted);
+                }
+            }
         }
+        merits
     }
 
     /// Minus the largest turn in degrees from a wanted position.
@@ -219,6 +232,20 @@ impl Judge {
         });
         -turns.fold(0.0, f64::max)
     }
+}
+
+/// An axis with limits, as the scoring of many settings wants it.
+#[derive(Debug, Clone)]
+struct LimitedAxis {
+    axis: usize,
+    counts: bool,
+    travel: Travel,
+}
+
+/// The smaller of two numbers that are no NaN: one instruction, where `f64::min` needs several.
+#[inline]
+fn smaller(a: f64, b: f64) -> f64 {
+    if b < a { b } else { a }
 }
 
 fn same_place(a: &JudgedSetting, b: &JudgedSetting) -> bool {
