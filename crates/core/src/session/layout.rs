@@ -3,7 +3,7 @@
 use super::tokens::{Kind, Token, Tokens};
 
 /// Wide enough for a peak of a four-circle machine with uncertainty and time.
-const WIDTH: usize = 150;
+const WIDTH: usize = 160;
 const INDENT: usize = 4;
 
 /// Lays out a compact RON text of one value. The outermost bracket is always broken into lines.
@@ -128,7 +128,7 @@ mod tests {
 
     #[test]
     fn short_things_stay_on_a_line_and_long_ones_break() {
-        let item = format!("(name:\"{}\",at:(1.0,-0.0,2.5))", "x".repeat(70));
+        let item = format!("(name:\"{}\",at:(1.0,-0.0,2.5))", "x".repeat(80));
         let text = laid_out(&format!("(version:1,list:[{item},{item}],choice:Inline((a:[{item},{item}])),empty:[])"));
         let expected = format!(
             "(\n    version: 1,\n    list: [\n        {0},\n        {0},\n    ],\n    choice: Inline((\n        a: [\n            \
