@@ -17,6 +17,8 @@ pub mod radiation;
 pub mod reach;
 pub mod route;
 pub mod session;
+pub mod targets;
+pub mod work;
 
 #[cfg(test)]
 mod testing;

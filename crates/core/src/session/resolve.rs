@@ -9,6 +9,7 @@ use crate::aim::{Preference, Rule};
 use crate::crystal::{SpaceGroup, UnitCell};
 use crate::instrument::Instrument;
 use crate::orient::Orientation;
+use crate::radiation::Radiation;
 pub use peaks::Peak;
 pub use targets::MOST_NODES;
 
@@ -22,7 +23,9 @@ pub struct Resolved {
     pub cell: UnitCell,
     /// The space group in its setting.
     pub space_group: SpaceGroup,
-    /// Wavelength in Å.
+    /// The beam as it was stated.
+    pub radiation: Radiation,
+    /// Its wavelength in Å.
     pub wavelength_angstrom: f64,
     /// The machine.
     pub instrument: Instrument,
@@ -86,6 +89,7 @@ impl Session {
                 Ok(Resolved {
                     cell,
                     space_group,
+                    radiation: self.radiation.clone(),
                     wavelength_angstrom: self.radiation.wavelength_angstrom(),
                     instrument,
                     peaks,
