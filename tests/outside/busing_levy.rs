@@ -16,6 +16,7 @@ use ringwright_core::aim::Solver;
 use ringwright_core::crystal::UnitCell;
 use ringwright_core::frames::{Head, Hkl, Vector};
 use ringwright_core::instrument::{Instrument, Setting};
+use ringwright_core::orient::{Peak, orient_by_two};
 
 /// F: takes a vector of Busing & Levy's laboratory into ours.
 pub(crate) fn lab_from_bl() -> Matrix3<f64> {
@@ -116,4 +117,34 @@ fn the_azimuth_is_a_right_handed_turn_about_q() {
         pairs += 1;
     }
     assert_eq!(pairs, 48);
+}
+
+/// One of the two reflections of a row as a peak: the listed ω counts from the bisecting position.
+fn peak(row: &Row, which: u8) -> Peak {
+    let column = |name: &str| format!("{name}{which}");
+    let number = |name: &str| row.number(&column(name));
+    let omega = number("omega") + 0.5 * number("tth");
+    let setting = Setting::new(&[omega, number("chi"), number("phi"), number("tth")]);
+    Peak::new(Hkl::new(number("h"), number("k"), number("l")), setting, None).unwrap()
+}
+
+/// The listed U and UB map into Busing & Levy's φ frame; ours are F times theirs.
+#[test]
+fn two_reflections_give_the_listed_orientation() {
+    let (instrument, f) = (instrument(), lab_from_bl());
+    let rows = reference_rows("s4_two_reflections.csv");
+    assert_eq!(rows.len(), 12);
+    for row in &rows {
+        let cell = cell(row);
+        let wavelength = row.number("lambda");
+        for (first, second) in [(1, 2), (2, 1)] {
+            let found = orient_by_two(&cell, wavelength, &instrument, &peak(row, first), &peak(row, second)).unwrap();
+            // Seven decimals of a degree and nine of a matrix, over the sine of the angle between the two.
+            let u_off = (found.orientation.head_from_crystal.matrix() - f * row.matrix("U")).abs().max();
+            assert!(u_off < 1e-8, "U: {u_off:e}, {row:?}");
+            let ub_off = (found.orientation.ub - f * row.matrix("UB")).abs().max();
+            assert!(ub_off < 3e-9, "UB: {ub_off:e}, {row:?}");
+            assert!(found.angle_deg.misfit().abs() < 1e-6, "{row:?}");
+        }
+    }
 }
