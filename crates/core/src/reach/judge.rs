@@ -217,7 +217,9 @@ impl Judge {
         }
         if let Some(wanted) = &self.preferred_deg {
             for (branch, merit) in merits.iter_mut().enumerate().take(attempts.count) {
-                if let (true, Attempt::Setting { setting, .. }) = (*merit > 0.5 * BELOW_ALL_ALLOWED, attempts.get(branch)) {
+                if let (true, Attempt::Setting { setting, .. }) =
+                    (*merit > 0.5 * BELOW_ALL_ALLOWED, attempts.get(branch))
+                {
                     *merit = self.nearness(&setting, wanted);
                 }
             }
