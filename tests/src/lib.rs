@@ -4,9 +4,11 @@
 //! Everything here serves tests, so a table or machine that cannot be read stops the test with its name.
 #![allow(clippy::unwrap_used, clippy::expect_used)]
 
+mod gauss;
 mod machine;
 mod table;
 
+pub use gauss::Gauss;
 pub use machine::{all_settings, bisecting, four_circle, hold, sample_stack, settings_contain};
 pub use table::{Row, reference_rows};
 

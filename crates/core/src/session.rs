@@ -6,6 +6,7 @@
 //! accepted; the places of the second kind are found by reading the text again ([`place_problems`]). Saving is atomic and
 //! keeps whatever it would lose ([`Session::save`]).
 
+mod demo;
 mod document;
 mod files;
 mod layout;
@@ -19,10 +20,12 @@ mod save;
 mod tokens;
 mod words;
 
+pub use demo::{DEMOS, Demo, demo};
 pub use document::{
     CellDocument, CrystalDocument, FormatVersion, MachineChoice, Matrix, OrientationDocument, PeakDocument, Session,
     TargetNode, Targets,
 };
+pub use files::write_whole;
 pub use machines::{LibraryError, MachineLibrary};
 pub use opened::{OpenedSession, place_problems};
 pub use problem::{FieldProblem, FileProblem, SessionError};

@@ -3,6 +3,7 @@
 
 use std::io::{self, Write};
 
+use super::device_error;
 use super::drive_list::{angle_text, index_text};
 use crate::crystal::{Presence, SpaceGroup};
 use crate::instrument::{Instrument, Setting};
@@ -23,7 +24,8 @@ impl<'a, W: Write> ReachWriter<'a, W> {
     pub fn new(out: W, instrument: &'a Instrument, group: &'a SpaceGroup) -> io::Result<Self> {
         let mut csv = csv::Writer::from_writer(out);
         let columns = ["h", "k", "l", "d_angstrom", "two_theta_deg", "absent", "verdict", "detail"];
-        csv.write_record(columns.into_iter().chain(instrument.axes().map(|axis| axis.name.as_str())))?;
+        csv.write_record(columns.into_iter().chain(instrument.axes().map(|axis| axis.name.as_str())))
+            .map_err(device_error)?;
         Ok(Self { csv, instrument, group })
     }
 
@@ -33,7 +35,7 @@ impl<'a, W: Write> ReachWriter<'a, W> {
     /// If it cannot be written.
     pub fn reflection(&mut self, row: &ReachRow) -> io::Result<()> {
         let detail = row.verdict.detail(self.instrument);
-        self.row(row, row.verdict.word(), &detail, row.setting.as_ref())
+        self.row(row, row.verdict.word(), &detail, row.setting.as_ref()).map_err(device_error)
     }
 
     /// Writes one row for every setting of a reflection, also for those that are not allowed; one row without a setting
@@ -47,7 +49,8 @@ impl<'a, W: Write> ReachWriter<'a, W> {
             Settings::Judged(all) => {
                 for judged in all {
                     let detail = judged.verdict.detail(self.instrument);
-                    self.row(row, judged.verdict.word(), &detail, judged.setting.as_ref())?;
+                    let written = self.row(row, judged.verdict.word(), &detail, judged.setting.as_ref());
+                    written.map_err(device_error)?;
                 }
                 Ok(())
             }
@@ -62,7 +65,7 @@ impl<'a, W: Write> ReachWriter<'a, W> {
         self.csv.flush()
     }
 
-    fn row(&mut self, row: &ReachRow, verdict: &str, detail: &str, setting: Option<&Setting>) -> io::Result<()> {
+    fn row(&mut self, row: &ReachRow, verdict: &str, detail: &str, setting: Option<&Setting>) -> csv::Result<()> {
         for index in [row.hkl.h, row.hkl.k, row.hkl.l] {
             self.csv.write_field(index_text(index))?;
         }
@@ -76,7 +79,6 @@ impl<'a, W: Write> ReachWriter<'a, W> {
             let reading = setting.and_then(|setting| setting.readings_deg().get(i).copied());
             self.csv.write_field(reading.map_or_else(String::new, angle_text))?;
         }
-        self.csv.write_record(None::<&[u8]>)?;
-        Ok(())
+        self.csv.write_record(None::<&[u8]>)
     }
 }

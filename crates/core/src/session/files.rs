@@ -56,7 +56,7 @@ pub(super) fn real_file(path: &Path) -> io::Result<PathBuf> {
 /// moment leaves the old file or the new one. The permissions of the old file are kept. At worst a file with a name like
 /// `.night.ron.x7Qk2b.tmp` is left over.
 pub(super) fn replace(file: &Path, bytes: &[u8], old: Option<&Metadata>) -> io::Result<()> {
-    let beside = write_beside(file, bytes, old)?;
+    let beside = write_beside(file, old, |out| out.write_all(bytes))?;
     beside.persist(file).map_err(|error| error.error)?;
     sync_folder(file);
     Ok(())
@@ -64,13 +64,44 @@ pub(super) fn replace(file: &Path, bytes: &[u8], old: Option<&Metadata>) -> io::
 
 /// The same, but never in the place of a file that exists: that is an error of the kind `AlreadyExists`.
 pub(super) fn create(file: &Path, bytes: &[u8], like: Option<&Metadata>) -> io::Result<()> {
-    let beside = write_beside(file, bytes, like)?;
+    let beside = write_beside(file, like, |out| out.write_all(bytes))?;
     beside.persist_noclobber(file).map_err(|error| error.error)?;
     sync_folder(file);
     Ok(())
 }
 
-fn write_beside(file: &Path, bytes: &[u8], like: Option<&Metadata>) -> io::Result<tempfile::NamedTempFile> {
+/// Writes a whole file of results, symbolic links followed: written beside its place, flushed to the disk, then renamed. If
+/// `write` fails or the program is killed, a file that stood there is untouched.
+///
+/// # Errors
+/// If it cannot be written, or if something stands there that is no regular file.
+pub fn write_whole(path: &Path, write: impl FnOnce(&mut dyn Write) -> io::Result<()>) -> io::Result<()> {
+    let file = real_file(path)?;
+    if file.file_name().is_none() {
+        return Err(io::Error::other("it is no file name"));
+    }
+    let old = match fs::metadata(&file) {
+        Ok(metadata) if metadata.is_file() => Some(metadata),
+        // A renamed file would take the place of a device.
+        Ok(_) => return Err(io::Error::other("it is no regular file; accepted is a file, or a name that is free")),
+        Err(error) if error.kind() == io::ErrorKind::NotFound => None,
+        Err(error) => return Err(error),
+    };
+    let beside = write_beside(&file, old.as_ref(), |out| {
+        let mut buffered = io::BufWriter::new(out);
+        write(&mut buffered)?;
+        buffered.flush()
+    })?;
+    beside.persist(&file).map_err(|error| error.error)?;
+    sync_folder(&file);
+    Ok(())
+}
+
+fn write_beside(
+    file: &Path,
+    like: Option<&Metadata>,
+    write: impl FnOnce(&mut File) -> io::Result<()>,
+) -> io::Result<tempfile::NamedTempFile> {
     let name = file.file_name().unwrap_or_default().to_string_lossy();
     let mut builder = tempfile::Builder::new();
     let prefix = format!(".{name}.");
@@ -79,8 +110,7 @@ fn write_beside(file: &Path, bytes: &[u8], like: Option<&Metadata>) -> io::Resul
         builder.permissions(usual);
     }
     let mut beside = builder.tempfile_in(folder_of(file))?;
-    beside.write_all(bytes)?;
-    beside.flush()?;
+    write(beside.as_file_mut())?;
     if let Some(like) = like {
         beside.as_file().set_permissions(like.permissions())?;
     }

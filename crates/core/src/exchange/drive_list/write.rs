@@ -2,6 +2,7 @@ use std::io::{self, Write};
 
 use nalgebra::Matrix3;
 
+use super::super::device_error;
 use super::{FINGERPRINT, ROWS};
 use crate::frames::Hkl;
 use crate::instrument::Instrument;
@@ -27,7 +28,12 @@ pub struct Heading<'a> {
 pub fn write(out: &mut impl Write, list: &DriveList, heading: &Heading<'_>) -> io::Result<()> {
     write_heading(out, list, heading)?;
     let mut csv = csv::Writer::from_writer(out);
-    let axes = heading.instrument.axes().map(|axis| axis.name.as_str());
+    write_rows(&mut csv, list, heading.instrument).map_err(device_error)?;
+    csv.flush()
+}
+
+fn write_rows(csv: &mut csv::Writer<impl Write>, list: &DriveList, instrument: &Instrument) -> csv::Result<()> {
+    let axes = instrument.axes().map(|axis| axis.name.as_str());
     csv.write_record(["order", "h", "k", "l"].into_iter().chain(axes).chain(["drive_s", "elapsed_s"]))?;
     for (i, row) in list.rows.iter().enumerate() {
         let Hkl { h, k, l } = row.hkl;
@@ -43,7 +49,7 @@ pub fn write(out: &mut impl Write, list: &DriveList, heading: &Heading<'_>) -> i
         }
         csv.write_record(None::<&[u8]>)?;
     }
-    csv.flush()
+    Ok(())
 }
 
 fn write_heading(out: &mut impl Write, list: &DriveList, heading: &Heading<'_>) -> io::Result<()> {
