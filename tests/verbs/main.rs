@@ -1,5 +1,5 @@
 //! The headless verbs, as a user meets them: every verb on both demos and on a third machine, exit statuses, lists that were
-//! tampered with, pipes that close early.
+//! tampered with. What needs a process of its own is tested beside the binary.
 
 #![allow(clippy::unwrap_used, clippy::expect_used)]
 
@@ -8,7 +8,6 @@ mod doctored;
 mod help;
 mod jobs;
 mod outputs;
-mod spawned;
 
 use std::ffi::OsString;
 use std::path::{Path, PathBuf};

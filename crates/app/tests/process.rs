@@ -1,0 +1,79 @@
+//! The binary itself, where a process of its own matters: closed pipes, exit statuses, no display.
+
+#![allow(clippy::unwrap_used)]
+
+use std::io::{BufRead, BufReader};
+use std::process::{Command, Stdio};
+
+fn without_display() -> Command {
+    let mut command = Command::new(env!("CARGO_BIN_EXE_ringwright"));
+    command.env_remove("DISPLAY").env_remove("WAYLAND_DISPLAY").env_remove("WAYLAND_SOCKET");
+    command
+}
+
+const SESSION: &str = concat!(env!("CARGO_MANIFEST_DIR"), "/../../demo-sessions/kappa-monoclinic.ron");
+
+/// `ringwright reach … | head`: more rows than any pipe holds, and a reader that leaves after the first.
+#[test]
+fn a_pipe_that_closes_ends_quietly() {
+    let mut command = without_display();
+    command.args(["reach", SESSION, "--every-setting"]).stdout(Stdio::piped()).stderr(Stdio::piped());
+    let mut child = command.spawn().unwrap();
+    let mut first = String::new();
+    BufReader::new(child.stdout.take().unwrap()).read_line(&mut first).unwrap();
+    assert!(first.starts_with("h,k,l,"));
+    let ended = child.wait_with_output().unwrap();
+    let err = String::from_utf8(ended.stderr).unwrap();
+    assert_eq!(ended.status.code(), Some(0), "{err}");
+    assert!(!err.contains("ipe") && !err.contains("panicked"), "{err}");
+}
+
+#[test]
+fn without_a_display_one_line_names_the_verbs() {
+    for arguments in [&[][..], &[SESSION]] {
+        let ended = without_display().args(arguments).output().unwrap();
+        assert_eq!(ended.status.code(), Some(2));
+        assert!(ended.stdout.is_empty());
+        let err = String::from_utf8(ended.stderr).unwrap();
+        assert_eq!(err.lines().count(), 1, "{err}");
+        assert!(err.contains("orient, reach, plan, verify and demo"), "{err}");
+    }
+}
+
+/// A display that is named but not there: the window system finds out late, and in its own way.
+#[cfg(unix)]
+#[test]
+fn with_a_display_that_is_not_there_one_line_says_so() {
+    let ended = without_display().env("DISPLAY", ":7319").output().unwrap();
+    let err = String::from_utf8(ended.stderr).unwrap();
+    assert_eq!(ended.status.code(), Some(2), "{err}");
+    assert_eq!(err.lines().count(), 1, "{err}");
+    assert!(err.contains("no window") && err.contains("orient, reach, plan, verify and demo"), "{err}");
+}
+
+#[test]
+fn demo_without_a_display_is_done_after_the_headless_part() {
+    let ended = without_display().args(["demo", "kappa-monoclinic"]).output().unwrap();
+    let err = String::from_utf8(ended.stderr).unwrap();
+    assert_eq!(ended.status.code(), Some(0), "{err}");
+    assert!(String::from_utf8(ended.stdout).unwrap().contains("PROVEN: all "));
+    assert_eq!(err.lines().count(), 1, "one line says that there is no window: {err}");
+}
+
+#[test]
+fn a_refusal_is_a_status_and_not_a_panic() {
+    let ended = without_display().args(["plan", "no-such-file.ron"]).output().unwrap();
+    assert_eq!(ended.status.code(), Some(2));
+    assert!(!String::from_utf8(ended.stderr).unwrap().contains("panicked"));
+}
+
+#[test]
+fn results_and_remarks_keep_apart() {
+    let ended = without_display().args(["plan", SESSION]).output().unwrap();
+    assert_eq!(ended.status.code(), Some(0));
+    let out = String::from_utf8(ended.stdout).unwrap();
+    assert!(out.starts_with("# Drive list:") && out.ends_with('\n'));
+    let summary = "(counting not included)";
+    assert!(!out.contains(summary), "the summary is no part of the list");
+    assert!(String::from_utf8(ended.stderr).unwrap().contains(summary));
+}
