@@ -127,7 +127,9 @@ fn verdict(verification: &Verification) -> String {
         return "REJECTED: the list has no rows, so there is nothing to prove.".to_owned();
     }
     if proven < rows {
-        return format!("REJECTED: {} of {rows} rows fail. Do not run this list.", rows - proven);
+        let failed = rows - proven;
+        let fail = if failed == 1 { "fails" } else { "fail" };
+        return format!("REJECTED: {failed} of {rows} rows {fail}. Do not run this list.");
     }
     if let Some(stated) = verification.wrong_row_count {
         return format!("REJECTED: the list says it has {stated} rows, but {rows} are there. Do not run this list.");
