@@ -46,8 +46,8 @@ pub(super) fn in_words(op: &Operation) -> String {
     match (proper, fold) {
         (false, 1) => "inversion centre".to_owned(),
         (false, 2) => match intrinsic_shift(op, 2) {
-            None => format!("mirror plane ⟂ {along}"),
-            Some(shift) => format!("glide plane ⟂ {along} by {shift}"),
+            None => format!("mirror plane ⊥ {along}"),
+            Some(shift) => format!("glide plane ⊥ {along} by {shift}"),
         },
         (false, _) => format!("{fold}-fold rotoinversion axis ∥ {along}"),
         (true, _) => match intrinsic_shift(op, fold) {
@@ -141,13 +141,13 @@ mod tests {
     fn operations_are_named_by_what_they_are() {
         assert_eq!(words(IDENTITY, [0; 3]), "identity");
         assert_eq!(words(IDENTITY, [12, 12, 0]), "centring by a/2 + b/2");
-        assert_eq!(words([[1, 0, 0], [0, -1, 0], [0, 0, 1]], [0, 12, 12]), "glide plane ⟂ [0 1 0] by c/2");
-        assert_eq!(words([[1, 0, 0], [0, -1, 0], [0, 0, 1]], [0, 12, 0]), "mirror plane ⟂ [0 1 0]");
+        assert_eq!(words([[1, 0, 0], [0, -1, 0], [0, 0, 1]], [0, 12, 12]), "glide plane ⊥ [0 1 0] by c/2");
+        assert_eq!(words([[1, 0, 0], [0, -1, 0], [0, 0, 1]], [0, 12, 0]), "mirror plane ⊥ [0 1 0]");
         assert_eq!(words([[0, -1, 0], [1, 0, 0], [0, 0, 1]], [0, 0, 6]), "4-fold screw axis ∥ [0 0 1] by c/4");
         assert_eq!(words([[0, -1, 0], [1, 0, 0], [0, 0, 1]], [0, 0, 18]), "4-fold screw axis ∥ [0 0 1] by 3c/4");
         assert_eq!(words([[-1, 0, 0], [0, -1, 0], [0, 0, -1]], [3, 3, 3]), "inversion centre");
         assert_eq!(words([[0, 1, 0], [-1, 0, 0], [0, 0, -1]], [0; 3]), "4-fold rotoinversion axis ∥ [0 0 1]");
         assert_eq!(words([[0, 0, 1], [1, 0, 0], [0, 1, 0]], [0; 3]), "3-fold axis ∥ [1 1 1]");
-        assert_eq!(words([[0, 1, 0], [1, 0, 0], [0, 0, 1]], [6, 6, 6]), "glide plane ⟂ [1 -1 0] by a/4 + b/4 + c/4");
+        assert_eq!(words([[0, 1, 0], [1, 0, 0], [0, 0, 1]], [6, 6, 6]), "glide plane ⊥ [1 -1 0] by a/4 + b/4 + c/4");
     }
 }

@@ -54,7 +54,7 @@ impl Operation {
         self.rotation == IDENTITY
     }
 
-    /// In plain words: `mirror plane ⟂ [0 1 0]`, `glide plane ⟂ [0 1 0] by c/2`, `4-fold screw axis ∥ [0 0 1] by c/4`,
+    /// In plain words: `mirror plane ⊥ [0 1 0]`, `glide plane ⊥ [0 1 0] by c/2`, `4-fold screw axis ∥ [0 0 1] by c/4`,
     /// `centring by a/2 + b/2`. Directions are those of the direct lattice.
     pub fn in_words(&self) -> String {
         describe::in_words(self)

@@ -210,7 +210,7 @@ fn only_a_lattice_letter_gives_translations_and_friedel_mates() {
 fn an_absence_names_its_operation() {
     let group = by_symbol("P21/c", &Constraint::MonoclinicB.example()).unwrap();
     let reason = |hkl: [i32; 3]| group.reason(group.absence(Hkl::from(hkl)));
-    assert_eq!(reason([1, 0, 1]), "glide plane ⟂ [0 1 0] by c/2");
+    assert_eq!(reason([1, 0, 1]), "glide plane ⊥ [0 1 0] by c/2");
     assert_eq!(reason([0, 3, 0]), "2-fold screw axis ∥ [0 1 0] by b/2");
     assert_eq!(reason([1, 1, 1]), "");
     assert_eq!(group.absence(Hkl::new(0.5, 0.0, 1.0)), Presence::NotANode);
