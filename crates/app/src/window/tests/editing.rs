@@ -1,0 +1,110 @@
+use ringwright_core::session::{CrystalDocument, Session};
+
+use super::*;
+
+fn misfit_deg(harness: &Harness<'_, App>) -> f64 {
+    let oriented = harness.state().results().oriented.clone().unwrap();
+    oriented.report.as_ref().unwrap().pair.angle_deg.misfit()
+}
+
+fn crystal(harness: &Harness<'_, App>) -> CrystalDocument {
+    harness.state().session().crystal.clone()
+}
+
+#[test]
+fn another_cell_length_changes_the_misfit() {
+    let mut harness = demo(0);
+    let before = misfit_deg(&harness);
+    assert!(before.abs() < 0.2, "the demo's peaks fit: {before}");
+    enter(&mut harness, "b, Å", "13.6");
+    assert_eq!(crystal(&harness).cell.b_angstrom.get(), 13.6);
+    assert!((misfit_deg(&harness) - before).abs() > 0.2, "{} and {before}", misfit_deg(&harness));
+    assert!(harness.query_all_by_label_contains("unconfirmed, does not fit").count() > 0);
+}
+
+#[test]
+fn a_wrong_value_is_refused_at_its_field_and_the_last_good_one_stays() {
+    let mut harness = demo(0);
+    let (before, reach) = (crystal(&harness), harness.state().results().reach.clone().unwrap());
+    enter(&mut harness, "a, Å", "-3");
+    // At the field, and as the next thing to do.
+    let told = harness.query_all_by_label_contains("a, Å: -3 is not a length in Å between 0.1 and 10000");
+    assert_eq!(told.count(), 2);
+    assert_eq!(crystal(&harness), before);
+    assert!(std::sync::Arc::ptr_eq(&reach, harness.state().results().reach.as_ref().unwrap()));
+    // The rest goes on.
+    enter(&mut harness, "Largest 2θ, degrees", "20");
+    assert!(harness.state().results().reach.as_ref().unwrap().table.len() < reach.table.len());
+    enter(&mut harness, "a, Å", "9.9");
+    assert_eq!(harness.query_all_by_label_contains("is not a length").count(), 0);
+    assert_eq!(crystal(&harness).cell.a_angstrom.get(), 9.9);
+}
+
+#[test]
+fn inputs_that_do_not_fit_together_keep_the_last_answer() {
+    let mut harness = demo(0);
+    let reach = harness.state().results().reach.clone().unwrap();
+    enter(&mut harness, "Space group", "P 4/m m m");
+    let results = harness.state().results();
+    assert!(!results.problems.is_empty());
+    assert!(std::sync::Arc::ptr_eq(&reach, results.reach.as_ref().unwrap()));
+    assert!(results.current_plan().is_none(), "an old list must not leave as if it were of these inputs");
+    enter(&mut harness, "Space group", "P m m m");
+    assert!(harness.state().results().current_plan().is_some());
+}
+
+#[test]
+fn with_one_peak_there_is_no_orientation_and_the_strip_says_so() {
+    let mut harness = demo(0);
+    press(&mut harness, "Peak 2 in use");
+    press(&mut harness, "Peak 3 in use");
+    assert!(harness.state().session().peaks[1].ignored);
+    assert!(harness.state().results().orient_error.is_some());
+    assert!(harness.query_by_label_contains("1 of 2 needed").is_some());
+    assert!(harness.state().results().current_plan().is_none());
+}
+
+#[test]
+fn a_predicted_peak_is_not_in_use() {
+    let mut harness = demo(0);
+    let before = harness.state().session().peaks.len();
+    let hkl = harness.state().results().current_plan().unwrap().list.rows[0].hkl;
+    let ctx = harness.ctx.clone();
+    harness.state_mut().perform(&ctx, Command::Select(hkl));
+    harness.run_steps(3);
+    press(&mut harness, "Add as a peak to fill in");
+    let peaks = &harness.state().session().peaks;
+    assert_eq!(peaks.len(), before + 1);
+    assert!(peaks[before].ignored);
+    assert_eq!(peaks[before].readings_deg.len(), 4);
+}
+
+#[test]
+fn long_work_can_be_stopped_and_taken_up_again() {
+    let mut harness = demo(0);
+    let before = harness.state().results().reach.clone().unwrap();
+    // Some millions of nodes: long enough to be stopped.
+    let long: Session = {
+        let mut session = harness.state().session().clone();
+        session.crystal.cell.a_angstrom = ringwright_core::quantity::Length::new(120.0).unwrap();
+        session.targets = ron_targets(0.4);
+        session
+    };
+    harness.state_mut().opened.session = long;
+    harness.step();
+    assert!(harness.state().results().busy.is_some());
+    harness.run_steps(2);
+    press(&mut harness, "Stop");
+    let results = harness.state().results();
+    assert!(results.stopped && results.reach_is_stale);
+    assert!(std::sync::Arc::ptr_eq(&before, results.reach.as_ref().unwrap()), "the last answer stays");
+    harness.state_mut().opened.session.targets = ron_targets(1.5);
+    settle(&mut harness);
+    assert!(!harness.state().results().stopped);
+    assert!(!harness.state().results().reach_is_stale);
+}
+
+fn ron_targets(min: f64) -> ringwright_core::session::Targets {
+    let min_angstrom = ringwright_core::quantity::Length::new(min).unwrap();
+    ringwright_core::session::Targets::SpacingRange { min_angstrom, max_angstrom: None, with_absent: false }
+}

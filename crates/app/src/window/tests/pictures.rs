@@ -1,0 +1,127 @@
+use std::path::Path;
+
+use super::*;
+
+/// Every picture: both demos, a laptop's window and a desk's, light and dark.
+///
+/// `RINGWRIGHT_SHOTS=folder cargo test --release -p ringwright pictures` writes them as PNG; without the variable only the
+/// first is drawn.
+#[test]
+fn pictures_of_both_demos_are_drawn() {
+    let folder = std::env::var_os("RINGWRIGHT_SHOTS");
+    let mut wanted = Vec::new();
+    for demo in 0..DEMOS.len() {
+        for (size, name) in [(LAPTOP, "laptop"), ([1920.0, 1080.0], "desk")] {
+            for theme in [Theme::Light, Theme::Dark] {
+                wanted.push((demo, size, name, theme));
+            }
+        }
+    }
+    if folder.is_none() {
+        wanted.truncate(1);
+    }
+    for (demo, size, name, theme) in wanted {
+        let start = Start::Demo(DEMOS[demo].name);
+        let mut harness = window(&start, size, theme);
+        let ctx = harness.ctx.clone();
+        let hkl = harness.state().results().current_plan().unwrap().list.rows[2].hkl;
+        harness.state_mut().perform(&ctx, Command::Select(hkl));
+        harness.run_steps(4);
+        let image = harness.render().unwrap();
+        assert_eq!((image.width(), image.height()), (size[0] as u32, size[1] as u32));
+        let colours: std::collections::HashSet<[u8; 4]> = image.pixels().map(|p| p.0).collect();
+        assert!(colours.len() > 100, "the picture shows something: {} colours", colours.len());
+        if let Some(folder) = &folder {
+            let file = format!("{}-{name}-{}.png", DEMOS[demo].name, word(theme));
+            std::fs::create_dir_all(folder).unwrap();
+            image.save(Path::new(folder).join(file)).unwrap();
+        }
+    }
+}
+
+/// What leads to a state.
+type Act = fn(&mut Harness<'static, App>);
+
+/// States that a person meets on the way: written with the others.
+#[test]
+fn pictures_of_other_states_are_drawn() {
+    let folder = std::env::var_os("RINGWRIGHT_SHOTS");
+    let states: [(&str, Act); 6] = [
+        ("refused", |harness| {
+            enter(harness, "a, Å", "-3");
+            enter(harness, "Peak 1 chi, degrees", "1,5");
+        }),
+        ("no-orientation", |harness| {
+            for peak in ["Peak 1 in use", "Peak 2 in use", "Peak 3 in use"] {
+                press(harness, peak);
+            }
+        }),
+        ("two-peaks", |harness| press(harness, "Peak 3 in use")),
+        ("does-not-fit", |harness| {
+            enter(harness, "b, Å", "6.9");
+            perform(harness, Command::SaveAsByPath);
+        }),
+        ("export", |harness| perform(harness, Command::Export)),
+        ("unsaved", |harness| {
+            enter(harness, "b, Å", "6.3");
+            perform(harness, Command::Quit);
+        }),
+    ];
+    for (i, (name, reach_state)) in states.into_iter().enumerate() {
+        if folder.is_none() && i > 0 {
+            continue;
+        }
+        let theme = if i % 2 == 0 { Theme::Light } else { Theme::Dark };
+        let mut harness = window(&Start::Demo(DEMOS[0].name), LAPTOP, theme);
+        let before = harness.render().unwrap();
+        reach_state(&mut harness);
+        harness.run_steps(4);
+        let image = harness.render().unwrap();
+        assert!(image != before, "{name} looks different");
+        if let Some(folder) = &folder {
+            image.save(Path::new(folder).join(format!("state-{name}.png"))).unwrap();
+        }
+    }
+}
+
+/// Whatever the sources of window and core can say has a glyph; only comments are left out.
+#[test]
+fn the_font_has_every_character_of_the_sources() {
+    let mut characters = std::collections::BTreeSet::from_iter(' '..='~');
+    for root in ["src", "../core/src", "../../assets", "../../demo-sessions"] {
+        collect(&Path::new(env!("CARGO_MANIFEST_DIR")).join(root), &mut characters);
+    }
+    assert!(characters.contains(&'Å') && characters.contains(&'θ'), "the sources were read");
+    let harness = demo(0);
+    let font = egui::TextStyle::Body.resolve(&harness.ctx.global_style());
+    let missing: Vec<char> = harness.ctx.fonts_mut(|fonts| {
+        characters.iter().copied().filter(|c| !c.is_control() && !fonts.has_glyph(&font, *c)).collect()
+    });
+    assert_eq!(missing, Vec::<char>::new());
+}
+
+fn collect(path: &Path, characters: &mut std::collections::BTreeSet<char>) {
+    if path.is_dir() {
+        for entry in std::fs::read_dir(path).unwrap() {
+            collect(&entry.unwrap().path(), characters);
+        }
+    } else if path.extension().is_some_and(|ending| ["rs", "ron", "csv"].iter().any(|known| ending == *known)) {
+        let text = std::fs::read_to_string(path).unwrap();
+        let spoken = text.lines().filter(|line| !line.trim_start().starts_with("//"));
+        characters.extend(spoken.flat_map(str::chars));
+    }
+}
+
+/// Figures in a column stand below each other only if they are of one width.
+#[test]
+fn figures_are_tabular() {
+    let harness = demo(0);
+    let font = egui::TextStyle::Body.resolve(&harness.ctx.global_style());
+    let widths: Vec<f32> =
+        harness.ctx.fonts_mut(|fonts| ('0'..='9').map(|figure| fonts.glyph_width(&font, figure)).collect());
+    assert!(widths[0] > 3.0 && widths.iter().all(|width| *width == widths[0]), "{widths:?}");
+}
+
+fn word(theme: Theme) -> &'static str {
+    if theme == Theme::Dark { "dark" } else { "light" }
+}

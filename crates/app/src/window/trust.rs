@@ -1,0 +1,108 @@
+//! Whether the orientation can be trusted, and what to do next, in words.
+
+use ringwright_core::frames::Hkl;
+use ringwright_core::orient::{
+    ChangeKind, Confirmation, DecidingReflection, Doubt, IndexChange, Mend, OrientationReport, Third,
+};
+
+/// Why the orientation is not confirmed, as one sentence; nothing if it is.
+pub fn doubt(report: &OrientationReport) -> Option<String> {
+    let Confirmation::Unconfirmed { because, .. } = &report.confirmation else { return None };
+    let named = |indices: &[usize]| {
+        let of = |i: &usize| report.later.iter().find(|peak| peak.index == *i).map(|peak| peak.observation.hkl);
+        indices.iter().filter_map(of).map(|hkl| hkl.to_string()).collect::<Vec<_>>().join("; ")
+    };
+    let others = report.others.by_position.len();
+    Some(match because {
+        Doubt::PairDisagrees => "The two peaks do not fit their own indices.".to_owned(),
+        Doubt::NoThirdPeak if others == 0 => "Two peaks cannot prove themselves; a third must agree.".to_owned(),
+        Doubt::NoThirdPeak => match others {
+            1 => "Two peaks cannot prove themselves: another way to index them fits as well.".to_owned(),
+            n => format!("Two peaks cannot prove themselves: {n} other ways to index them fit as well."),
+        },
+        Doubt::NotAllCompared => {
+            "Later peaks agree, but so many ways to index the first two fit that not all were compared.".to_owned()
+        }
+        Doubt::AllInPlane => "No later peak is far enough out of the plane of the first two.".to_owned(),
+        Doubt::Contradicted(peaks) => format!("Not where this orientation puts it: {}.", named(peaks)),
+        Doubt::OthersLeft { assignments } => {
+            let others = match assignments.len() {
+                1 => "another way to index the first two explains".to_owned(),
+                n => format!("{n} other ways to index the first two explain"),
+            };
+            format!("Later peaks agree, but {others} them too.")
+        }
+    })
+}
+
+/// The reflection to measure next, if one decides.
+pub fn next(report: &OrientationReport) -> Option<&DecidingReflection> {
+    match &report.confirmation {
+        Confirmation::Unconfirmed { because: Doubt::PairDisagrees | Doubt::Contradicted(_), .. } => None,
+        Confirmation::Unconfirmed { next: Third::Measure(third), .. } => Some(third),
+        _ => None,
+    }
+}
+
+/// What the next reflection does, as one sentence.
+pub fn why(third: &DecidingReflection) -> String {
+    let DecidingReflection { hkl, d_angstrom, two_theta_deg, decides, of, .. } = third;
+    let what = match (decides, of) {
+        (_, 0) => "a third peak out of the plane".to_owned(),
+        (1, 1) => "it rules out the other way".to_owned(),
+        (d, n) if d == n => format!("it rules out all {n} other ways"),
+        (d, n) => format!("it rules out {d} of {n} other ways"),
+    };
+    format!("Measure {hkl} next: {what} (2θ {two_theta_deg:.2}°, d {d_angstrom:.4} Å).")
+}
+
+/// That no reflection decides, as one sentence; nothing where one does or none is needed.
+pub fn none_decides(report: &OrientationReport) -> Option<String> {
+    match &report.confirmation {
+        Confirmation::Unconfirmed { next: Third::NoneFound { down_to_d_angstrom, tried, .. }, .. } => {
+            Some(format!("No reachable reflection decides: {tried} were tried, down to d = {down_to_d_angstrom:.3} Å."))
+        }
+        _ => None,
+    }
+}
+
+/// The simplest change of indices that would mend a misfit, as one sentence.
+pub fn simplest_mend(report: &OrientationReport) -> Option<String> {
+    let Mend::Changes { listed, .. } = &report.mend else { return None };
+    Some(format!("These would fit: {}.", change(listed.first()?)))
+}
+
+/// A change of indices that would mend a misfit.
+pub fn change(change: &IndexChange) -> String {
+    let names = ["first peak", "second peak"];
+    let pairs = names.iter().zip(change.kind).zip(change.from.iter().zip(change.to));
+    let parts: Vec<String> = pairs
+        .filter(|((_, kind), _)| *kind != ChangeKind::Kept)
+        .map(|((name, _), (from, to)): (_, (&Hkl, Hkl))| format!("{name} {from} → {to}"))
+        .collect();
+    format!("{}: then the angle is {:+.3}° off", parts.join(", "), change.fit.angle_deg)
+}
+
+/// The misfits of the first two peaks in one line, each with a sign whether the readings allow it.
+pub fn misfits(report: &OrientationReport) -> String {
+    let sign = |agrees: bool| if agrees { "✓" } else { "!" };
+    let angle = &report.pair.angle_deg;
+    let mut text = format!("misfits: angle {:+.3}° {}", angle.misfit(), sign(angle.agrees()));
+    for d in &report.pair.d_angstrom {
+        text.push_str(&format!(", d {:+.4} Å {}", d.misfit(), sign(d.agrees())));
+    }
+    for peak in &report.later {
+        text.push_str(&format!(
+            ", {} off {:.3}° {}",
+            peak.observation.hkl,
+            peak.direction_deg.observed,
+            sign(peak.agrees())
+        ));
+    }
+    signs(&text)
+}
+
+/// The same text with minus signs that can be seen.
+pub fn signs(text: &str) -> String {
+    text.replace('-', "\u{2212}")
+}
