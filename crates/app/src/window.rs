@@ -29,6 +29,7 @@ use std::sync::atomic::{AtomicBool, Ordering};
 
 pub use app::{App, Options};
 pub use command::Command;
+pub use files::{Dialogue, Purpose};
 pub use shared::{Busy, Picked, Plan, Reach, Results};
 
 /// What the window opens on.
@@ -52,7 +53,7 @@ pub fn open(start: Start) -> Result<(), String> {
         .with_min_inner_size([1000.0, 640.0]);
     let options = eframe::NativeOptions { viewport, renderer: eframe::Renderer::Glow, ..Default::default() };
     let create = move |cc: &eframe::CreationContext<'_>| -> Result<Box<dyn eframe::App>, Box<dyn std::error::Error + Send + Sync>> {
-        let app = App::new(&cc.egui_ctx, &start, Options { system_dialogues: true })?;
+        let app = App::new(&cc.egui_ctx, &start, Options::default())?;
         OPENED.store(true, Ordering::Relaxed);
         Ok(Box::new(app))
     };

@@ -8,7 +8,7 @@ use super::ask::{Ask, Reply};
 use super::command::Command;
 use super::desk::Desk;
 use super::edits::Edits;
-use super::files::{Files, Named, Purpose};
+use super::files::{Dialogue, Files, Named, Purpose, system_dialogue};
 use super::shared::{Picked, Results};
 use super::strip::Message;
 use super::workplace::Views;
@@ -43,8 +43,14 @@ pub struct App {
 /// What is different where there is nobody to ask.
 #[derive(Debug, Clone, Copy)]
 pub struct Options {
-    /// Whether the system's file dialogues are used; without them the path field is.
-    pub system_dialogues: bool,
+    /// How a person is asked for a file.
+    pub dialogue: Dialogue,
+}
+
+impl Default for Options {
+    fn default() -> Self {
+        Self { dialogue: system_dialogue }
+    }
 }
 
 impl App {
@@ -72,7 +78,7 @@ impl App {
             results: Results::default(),
             picked: Picked::default(),
             views: Views::default(),
-            files: Files::new(options.system_dialogues),
+            files: Files::new(options.dialogue),
             ask: None,
             message: None,
             instrument: None,
@@ -104,7 +110,7 @@ impl App {
 
     /// Whether all work is done.
     pub fn is_settled(&self) -> bool {
-        self.results.busy.is_none() && self.seen.as_ref() == Some(&self.opened.session)
+        self.results.busy.is_none() && !self.files.is_waiting() && self.seen.as_ref() == Some(&self.opened.session)
     }
 
     /// Takes in what workers have found and asks anew where the document has changed.

@@ -64,34 +64,33 @@ struct PathBar {
     fresh: bool,
 }
 
+/// Asks a person for a file, beginning at a path, and waits; nothing if there is no answer.
+pub type Dialogue = fn(Purpose, &Path) -> Option<PathBuf>;
+
 /// Dialogues and path field.
 #[derive(Debug)]
 pub struct Files {
-    /// Whether the system's dialogues are asked at all.
-    use_system: bool,
+    dialogue: Dialogue,
     waiting: Option<(Purpose, PathBuf, Receiver<Option<PathBuf>>)>,
     bar: Option<PathBar>,
 }
 
 impl Files {
-    /// With the system's dialogues, or with the path field alone.
-    pub fn new(use_system: bool) -> Self {
-        Self { use_system, waiting: None, bar: None }
+    /// With a dialogue, and the path field where that gives nothing.
+    pub fn new(dialogue: Dialogue) -> Self {
+        Self { dialogue, waiting: None, bar: None }
     }
 
-    /// Asks the system's dialogue. `start` is a path to begin with; `wake` is called when there is an answer.
+    /// Asks the dialogue on a worker. `start` is a path to begin with; `wake` is called when there is an answer.
     pub fn ask_system(&mut self, purpose: Purpose, start: &Path, wake: impl Fn() + Send + 'static) {
-        if !self.use_system {
-            return self.ask_path(purpose, start, "");
-        }
         if self.waiting.is_some() {
             return;
         }
         let (sender, receiver) = channel();
-        let begin = start.to_owned();
+        let (begin, dialogue) = (start.to_owned(), self.dialogue);
         let started = std::thread::Builder::new().name("file dialogue".to_owned()).spawn(move || {
             // Nobody listens any more once the window is closed.
-            let _ = sender.send(system_dialogue(purpose, &begin));
+            let _ = sender.send(dialogue(purpose, &begin));
             wake();
         });
         match started {
@@ -190,7 +189,8 @@ impl Files {
     }
 }
 
-fn system_dialogue(purpose: Purpose, start: &Path) -> Option<PathBuf> {
+/// The dialogue of the system.
+pub fn system_dialogue(purpose: Purpose, start: &Path) -> Option<PathBuf> {
     let words = if purpose == Purpose::Export { "Drive list" } else { "Session" };
     let mut dialogue = rfd::FileDialog::new().add_filter(words, &[purpose.ending()]);
     if let Some(folder) = start.parent().filter(|folder| folder.is_dir()) {

@@ -16,8 +16,14 @@ use super::{App, Command, Options, Start};
 /// The window of a usual laptop.
 const LAPTOP: [f32; 2] = [1280.0, 800.0];
 
-fn window(start: &Start, [width, height]: [f32; 2], theme: Theme) -> Harness<'static, App> {
-    let options = Options { system_dialogues: false };
+/// A system without a dialogue that works.
+const NO_DIALOGUE: Options = Options { dialogue: |_, _| None };
+
+fn window(start: &Start, size: [f32; 2], theme: Theme) -> Harness<'static, App> {
+    window_with(start, size, theme, NO_DIALOGUE)
+}
+
+fn window_with(start: &Start, [width, height]: [f32; 2], theme: Theme, options: Options) -> Harness<'static, App> {
     let mut harness: Harness<'static, App> = HarnessBuilder::default()
         .with_size(vec2(width, height))
         .with_theme(theme)

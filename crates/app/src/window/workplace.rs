@@ -192,14 +192,10 @@ fn trust_line(ui: &mut Ui, results: &Results) {
         let (rect, _) = ui.allocate_exact_size(vec2(16.0, 18.0), egui::Sense::hover());
         inputs::mark(ui.painter(), rect.center(), state, tones);
         ui.label(RichText::new(format!("Orientation {words}")).color(tones.strong));
-        let oriented = results.oriented.as_ref().filter(|_| results.orient_error.is_none());
-        if let Some(report) = oriented.and_then(|oriented| oriented.report.as_ref()) {
-            ui.add(egui::Label::new(RichText::new(trust::misfits(report)).color(tones.quiet)).truncate());
-        }
         if results.reach_is_stale && results.busy.is_none() && results.reach.is_some() {
-            ui.with_layout(egui::Layout::right_to_left(egui::Align::Center), |ui| {
-                ui.label(RichText::new("! shown are results of earlier inputs").color(tones.doubt));
-            });
+            ui.label(RichText::new("! what is shown below follows from earlier inputs").color(tones.doubt));
+        } else if let Some(report) = results.oriented.as_ref().and_then(|oriented| oriented.report.as_ref()) {
+            ui.add(egui::Label::new(RichText::new(trust::misfits(report)).color(tones.quiet)).truncate());
         }
     });
 }

@@ -42,6 +42,9 @@ pub fn state(results: &Results) -> (State, String) {
     let Some(oriented) = results.oriented.as_ref().filter(|_| results.orient_error.is_none()) else {
         return (State::Missing, "none".to_owned());
     };
+    if !results.problems.is_empty() {
+        return (State::Doubtful, "of earlier inputs".to_owned());
+    }
     match (&oriented.report, oriented.orientation.confirmed) {
         (_, true) => (State::Complete, "confirmed".to_owned()),
         (Some(report), false) if !report.pair.agrees() => (State::Missing, "unconfirmed, does not fit".to_owned()),

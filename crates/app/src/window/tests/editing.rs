@@ -48,6 +48,8 @@ fn inputs_that_do_not_fit_together_keep_the_last_answer() {
     let results = harness.state().results();
     assert!(!results.problems.is_empty());
     assert!(std::sync::Arc::ptr_eq(&reach, results.reach.as_ref().unwrap()));
+    assert!(harness.query_by_label_contains("follows from earlier inputs").is_some());
+    assert!(harness.query_by_label("Orientation of earlier inputs").is_some());
     assert!(results.current_plan().is_none(), "an old list must not leave as if it were of these inputs");
     enter(&mut harness, "Space group", "P m m m");
     assert!(harness.state().results().current_plan().is_some());

@@ -27,6 +27,29 @@ fn a_session_is_saved_and_opened_through_the_path_field() {
 }
 
 #[test]
+fn without_a_working_dialogue_the_path_field_opens_by_itself() {
+    let mut harness = demo(0);
+    press(&mut harness, "Open…");
+    assert!(harness.query_by_label_contains("gave no file").is_some());
+    assert!(harness.query_by_label("Path of the session").is_some());
+    press(&mut harness, "Close");
+    assert!(harness.query_by_label("Path of the session").is_none());
+}
+
+#[test]
+fn a_file_named_in_the_dialogue_is_opened() {
+    let dialogue = |purpose, _: &std::path::Path| {
+        assert_eq!(purpose, crate::window::Purpose::Open);
+        Some(std::path::PathBuf::from(env!("CARGO_MANIFEST_DIR")).join("../../demo-sessions/kappa-monoclinic.ron"))
+    };
+    let start = Start::Demo(DEMOS[0].name);
+    let mut harness = window_with(&start, LAPTOP, Theme::Light, Options { dialogue });
+    press(&mut harness, "Open…");
+    assert_eq!(*harness.state().session(), DEMOS[1].open().unwrap().session);
+    assert!(harness.query_by_label("Path of the session").is_none());
+}
+
+#[test]
 fn a_file_that_is_no_session_is_refused_in_the_bar() {
     let folder = tempfile::tempdir().unwrap();
     let path = folder.path().join("broken.ron");

@@ -27,6 +27,7 @@ fn pictures_of_both_demos_are_drawn() {
         let hkl = harness.state().results().current_plan().unwrap().list.rows[2].hkl;
         harness.state_mut().perform(&ctx, Command::Select(hkl));
         harness.run_steps(4);
+        harness.check_accessibility();
         let image = harness.render().unwrap();
         assert_eq!((image.width(), image.height()), (size[0] as u32, size[1] as u32));
         let colours: std::collections::HashSet<[u8; 4]> = image.pixels().map(|p| p.0).collect();
@@ -76,6 +77,7 @@ fn pictures_of_other_states_are_drawn() {
         let before = harness.render().unwrap();
         reach_state(&mut harness);
         harness.run_steps(4);
+        harness.check_accessibility();
         let image = harness.render().unwrap();
         assert!(image != before, "{name} looks different");
         if let Some(folder) = &folder {
