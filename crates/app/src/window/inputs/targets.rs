@@ -103,12 +103,8 @@ fn spacing(ui: &mut Ui, edits: &mut Edits, min: &mut Length, max: &mut Option<Le
             *min = new;
         }
         ui.label("to");
-        let field = Field {
-            path: "targets.SpacingRange.max_angstrom",
-            label: "Largest d, Å",
-            width: 76.0,
-            hint: "no upper end",
-        };
+        let field =
+            Field { path: "targets.SpacingRange.max_angstrom", label: "Largest d, Å", width: 76.0, hint: "no end" };
         if let Some(new) = optional(ui, edits, &field, max.map(|m| m.get()), Length::new) {
             *max = new;
         }
