@@ -79,4 +79,5 @@ fn perform(harness: &mut Harness<'_, App>, command: Command) {
     let ctx = harness.ctx.clone();
     harness.state_mut().perform(&ctx, command);
     harness.run_steps(2);
+    settle(harness);
 }
