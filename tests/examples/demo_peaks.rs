@@ -48,7 +48,7 @@ fn write_peaks(demo: &Demo, truth: &Truth, out: &mut impl Write) -> Result<(), B
     let inputs = resolved.map_err(|problems| format!("{problems:?}"))?;
     let axis = Unit::new_normalize(Vector3::from(truth.axis));
     let ub = Rotation3::from_axis_angle(&axis, truth.turn_deg.to_radians()).matrix() * inputs.cell.b_matrix();
-    let judge = work::judge(&inputs)?;
+    let judge = work::judge(&inputs, &ub)?;
     let mut errors = Gauss::new(truth.seed);
     for (hkl, sigma_deg) in truth.peaks {
         let node = Vector::from_raw(ub * Hkl::from(hkl).to_vector());

@@ -5,7 +5,8 @@
 //! 3. What remains is decomposed in closed form over two moving axes ([`pair`]) or, bisecting, over three
 //!    ([`bisecting`]), with the rotation subproblems of [`crate::frames::subproblem`].
 //!
-//! Whatever depends on the stack alone is computed once, in [`Solver::new`]. Axis vectors are data: a new machine is a
+//! That is the short road of a [`Solver`]. Every other stack and rule takes the [`general`] one; a [`Road`] is whichever
+//! serves. Whatever depends on the stack alone is computed once, in [`Road::new`]. Axis vectors are data: a new machine is a
 //! file, never a new solver.
 
 mod attempts;
@@ -13,7 +14,10 @@ mod bisecting;
 mod chain;
 mod detector;
 mod fit;
+mod general;
 mod pair;
+mod reference;
+mod road;
 mod rule;
 mod solver;
 #[cfg(test)]
@@ -22,6 +26,9 @@ mod tests;
 
 pub(crate) use attempts::MAX_BRANCHES;
 pub use attempts::{Attempt, Attempts, Branch, Freedom};
-pub use fit::RuleError;
+pub use fit::{RuleError, RuleProblem, problems as rule_problems};
+pub use general::NoAzimuth;
+pub use reference::{CrystalOnHead, Reference};
+pub use road::{NoSetting, Road, azimuth_rad};
 pub use rule::{Preference, Rule};
 pub use solver::{OutsideSphere, Solver};

@@ -10,7 +10,9 @@ mod tests;
 
 pub use desk::Desk;
 
-use crate::aim::RuleError;
+use nalgebra::Matrix3;
+
+use crate::aim::{CrystalOnHead, RuleError};
 use crate::crystal::{DRange, NodesError};
 use crate::frames::{Hkl, Vector};
 use crate::orient::{OrientError, Orientation, OrientationReport, Peak, PeakError, Setup};
@@ -108,7 +110,8 @@ pub fn orient(inputs: &Resolved) -> Result<Oriented, WorkError> {
         instrument: &inputs.instrument,
     };
     // U depends on no rule: with rules that do not fit the machine, every node counts as reachable here.
-    let judge = judge(inputs).ok();
+    // Rules that speak of an azimuth or a surface wait for it.
+    let judge = Judge::new(&inputs.instrument, &inputs.rules, &inputs.preference).ok();
     let reachable = |node: Vector<crate::frames::Head>| {
         judge.as_ref().is_none_or(|judge| judge.verdict(node, inputs.wavelength_angstrom).verdict.is_reachable())
     };
@@ -140,12 +143,13 @@ pub fn wanted(inputs: &Resolved, pace: &impl Pace) -> Result<Wanted, WorkError> 
     })
 }
 
-/// The judge of this machine under these rules and this preference.
+/// The judge of this machine and crystal under these rules and this preference. `ub` is in Å⁻¹.
 ///
 /// # Errors
 /// If the rules do not fit the machine.
-pub fn judge(inputs: &Resolved) -> Result<Judge, WorkError> {
-    Ok(Judge::new(&inputs.instrument, &inputs.rules, &inputs.preference)?)
+pub fn judge(inputs: &Resolved, ub: &Matrix3<f64>) -> Result<Judge, WorkError> {
+    let crystal = CrystalOnHead { ub: *ub, surface: inputs.surface };
+    Ok(Judge::for_crystal(&inputs.instrument, &inputs.rules, &inputs.preference, &crystal)?)
 }
 
 /// The verdict on every wanted reflection.
@@ -153,7 +157,7 @@ pub fn judge(inputs: &Resolved) -> Result<Judge, WorkError> {
 /// # Errors
 /// If the rules do not fit the machine, if the wanted reflections cannot be listed, or if `pace` says no.
 pub fn reach(inputs: &Resolved, orientation: &Orientation, pace: &impl Pace) -> Result<ReachTable, WorkError> {
-    let judge = judge(inputs)?;
+    let judge = judge(inputs, &orientation.ub)?;
     reach_of(inputs, orientation, wanted(inputs, pace)?, &judge, pace)
 }
 
@@ -173,7 +177,7 @@ fn reach_of(
 /// # Errors
 /// If the rules do not fit the machine.
 pub fn settings(inputs: &Resolved, orientation: &Orientation, hkl: Hkl) -> Result<Settings, WorkError> {
-    Ok(judge(inputs)?.every_setting(orientation.q_in_head(hkl), inputs.wavelength_angstrom))
+    Ok(judge(inputs, &orientation.ub)?.every_setting(orientation.q_in_head(hkl), inputs.wavelength_angstrom))
 }
 
 /// The drive list of every reachable reflection of a table.

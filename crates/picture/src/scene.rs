@@ -72,6 +72,10 @@ pub enum Mark {
     Diamond,
     /// A corner up.
     Triangle,
+    /// A triangle with a corner down.
+    Wedge,
+    /// Upright, much higher than wide.
+    Bar,
 }
 
 /// A mark facing the viewer. Never smaller than one pixel.

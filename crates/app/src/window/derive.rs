@@ -117,7 +117,7 @@ impl Chain {
             orientation: oriented.orientation.clone(),
             rules: resolved.rules.clone(),
             preference: resolved.preference.clone(),
-            judge: work::judge(resolved)?,
+            judge: work::judge(resolved, &oriented.orientation.ub)?,
             table,
         });
         self.reach = Some(Arc::clone(&reach));

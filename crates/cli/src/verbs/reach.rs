@@ -17,7 +17,7 @@ pub fn reach(args: &ReachArgs, desktop: &mut Desktop<'_, '_>) -> Result<u8, Fail
     let table = work::reach(inputs, &orientation, &progress).map_err(|error| night.failure(&error))?;
     drop(progress);
     desktop.tell(&reach_summary(&table, inputs));
-    let judge = work::judge(inputs).map_err(|error| night.failure(&error))?;
+    let judge = work::judge(inputs, &orientation.ub).map_err(|error| night.failure(&error))?;
     let status = if table.verdicts().iter().any(|verdict| verdict.is_reachable()) { DONE } else { NO };
     desktop.deliver(args.output.as_deref(), status, |out| {
         let mut writer = ReachWriter::new(out, &inputs.instrument, &inputs.space_group)?;

@@ -1,6 +1,9 @@
+//! Whether rules fit a machine: each by itself, beside the others, and all together against the count of spare angles.
+
+use super::Reference;
 use super::chain::Chain;
 use super::rule::Rule;
-use crate::instrument::Instrument;
+use crate::instrument::{Axis, AxisName, Instrument, LIMIT_DUST_DEG};
 
 /// Rules that do not fit the machine.
 #[derive(Debug, Clone, PartialEq, Eq, thiserror::Error)]
@@ -17,103 +20,313 @@ pub enum RuleError {
         /// Rules given.
         rules: usize,
     },
-    /// A held axis that the machine does not have.
-    #[error("hold: there is no sample axis {name}; accepted are {accepted}")]
-    UnknownAxis {
-        /// What was asked for.
-        name: String,
-        /// The names that would do.
-        accepted: String,
+    /// One rule that cannot be kept on this machine.
+    #[error(transparent)]
+    Rule(#[from] RuleProblem),
+    /// Two rules settle the same freedom.
+    #[error("{first} and {second} settle the same freedom: {freedom}; accepted is one of them, and another rule")]
+    SameFreedom {
+        /// A rule.
+        first: String,
+        /// The other.
+        second: String,
+        /// What both settle.
+        freedom: &'static str,
     },
-    /// With one detector axis that axis follows from |Q| alone.
-    #[error("hold: {0} is the only detector axis, which 2θ settles; accepted is a sample axis")]
-    DetectorHeld(String),
-    /// Held by hand already.
-    #[error("hold: {0} is set by hand and never moves; accepted is an axis that moves")]
-    SetByHand(String),
-    /// The same axis held by two rules.
-    #[error("hold: {0} is held by two rules; accepted is one rule for each spare angle")]
-    HeldTwice(String),
-    /// A held reading beyond the limits.
-    #[error("hold: {at_deg}° lies outside the limits of {axis} by {over_deg}°")]
-    HeldOutsideLimits {
-        /// The axis.
-        axis: String,
-        /// The reading.
-        at_deg: String,
-        /// By how many degrees, as text.
-        over_deg: String,
-    },
-    /// The spindle is not where *bisecting* needs it.
+    /// An azimuth or a surface has no direction as long as nobody knows how the crystal sits.
     #[error(
-        "bisecting: the spindle must be the innermost moving axis and no two neighbouring axes parallel; use hold on this machine"
+        "{0}: this rule needs the crystal's orientation; accepted are two peaks, or an orientation kept from earlier"
     )]
-    NotBisectable,
-    /// An arrangement that the closed forms here do not cover.
-    #[error(
-        "a machine with {sample} moving sample and {detector} detector axes is not covered yet; accepted are two or three sample axes and one detector axis across the beam"
-    )]
-    NotCovered {
-        /// Sample axes that move.
-        sample: usize,
-        /// Detector axes.
-        detector: usize,
-    },
+    NeedsOrientation(&'static str),
+    /// A combination that the roads here do not reach.
+    #[error("{0}")]
+    NotCovered(String),
 }
 
-/// The reading of each sample axis that does not move, set by hand or held by a rule.
-///
-/// # Errors
-/// If there are more or fewer rules than spare angles, or if an axis cannot be held.
-pub(super) fn held_readings(instrument: &Instrument, rules: &[Rule]) -> Result<Vec<Option<f64>>, RuleError> {
+/// What is wrong with one rule, and where.
+#[derive(Debug, Clone, PartialEq, Eq, thiserror::Error)]
+#[error("{word}: {message}")]
+pub struct RuleProblem {
+    /// Its number among the rules, from 0.
+    pub rule: usize,
+    /// Its name in messages.
+    pub word: &'static str,
+    /// Path of the field below the rule, for example `Hold.axis`; empty for the rule itself.
+    pub field: &'static str,
+    /// What is wrong and what would be accepted.
+    pub message: String,
+}
+
+/// Sample axes that move.
+pub(super) fn moving_sample(instrument: &Instrument) -> impl Iterator<Item = usize> + '_ {
+    instrument.sample_axes().iter().enumerate().filter(|(_, axis)| !axis.set_by_hand).map(|(i, _)| i)
+}
+
+/// The reading of each sample axis that does not move, set by hand or held; nothing if other rules than *hold* and
+/// *bisecting* about the usual axis are among them.
+pub(super) fn held_readings(instrument: &Instrument, rules: &[Rule]) -> Option<Vec<Option<f64>>> {
     let axes = instrument.sample_axes();
-    let mut held_deg: Vec<Option<f64>> = axes.iter().map(|a| a.set_by_hand.then_some(a.park_deg)).collect();
-    let sample = held_deg.iter().filter(|held| held.is_none()).count();
-    let detector = instrument.detector_axes().len();
-    let spare = sample as isize + detector as isize - 3;
-    if spare != rules.len() as isize {
-        return Err(RuleError::Count { sample, detector, spare, rules: rules.len() });
-    }
+    let mut held_deg: Vec<Option<f64>> = axes.iter().map(|axis| axis.set_by_hand.then_some(axis.park_deg)).collect();
     for rule in rules {
-        if let Rule::Hold { axis, at_deg } = rule {
-            hold(instrument, axis.as_str(), at_deg.get(), &mut held_deg)?;
+        match rule {
+            Rule::Bisecting => {}
+            Rule::Hold { axis, at_deg } => {
+                let held = axes.iter().position(|other| other.name == *axis)?;
+                held_deg[held] = Some(at_deg.get());
+            }
+            _ => return None,
         }
     }
-    Ok(held_deg)
-}
-
-fn hold(instrument: &Instrument, name: &str, at_deg: f64, held_deg: &mut [Option<f64>]) -> Result<(), RuleError> {
-    let sample = instrument.sample_axes();
-    let Some(i) = sample.iter().position(|axis| axis.name.as_str() == name) else {
-        if instrument.axis_index(name).is_some() {
-            return Err(RuleError::DetectorHeld(name.to_owned()));
-        }
-        let accepted: Vec<&str> = sample.iter().map(|axis| axis.name.as_str()).collect();
-        return Err(RuleError::UnknownAxis { name: name.to_owned(), accepted: accepted.join(", ") });
-    };
-    if sample[i].set_by_hand {
-        return Err(RuleError::SetByHand(name.to_owned()));
-    }
-    if held_deg[i].is_some() {
-        return Err(RuleError::HeldTwice(name.to_owned()));
-    }
-    let clearance = sample[i].travel.clearance_as_read_deg(at_deg);
-    if clearance < 0.0 {
-        let over_deg = format!("{:.4}", -clearance);
-        return Err(RuleError::HeldOutsideLimits { axis: name.to_owned(), at_deg: at_deg.to_string(), over_deg });
-    }
-    held_deg[i] = Some(at_deg);
-    Ok(())
+    Some(held_deg)
 }
 
 /// Whether the spindle is innermost and the reference axis, the third from inside, the outermost of those that move.
 pub(super) fn bisectable(instrument: &Instrument, chain: &Chain) -> bool {
-    let motors = instrument.sample_axes().iter().enumerate().filter(|(_, axis)| !axis.set_by_hand).map(|(i, _)| i);
-    let from_inside: Vec<usize> = motors.rev().collect();
+    let from_inside: Vec<usize> = moving_sample(instrument).collect();
     let last = chain.indices.last().copied();
-    from_inside.first().copied() == last
+    from_inside.last().copied() == last
         && last == Some(instrument.spindle())
-        && from_inside.get(2) == chain.indices.first()
+        && from_inside.iter().rev().nth(2) == chain.indices.first()
+}
+
+/// The position of the reference axis of *bisecting*: the third moving sample axis from inside unless a rule names it.
+pub(super) fn reference_axis(instrument: &Instrument, rules: &[Rule]) -> Option<usize> {
+    let named = rules.iter().find_map(|rule| match rule {
+        Rule::BisectingAbout { axis } => Some(axis),
+        _ => None,
+    });
+    match named {
+        Some(name) => instrument.axis_index(name.as_str()),
+        None => {
+            let from_inside: Vec<usize> = moving_sample(instrument).collect();
+            from_inside.iter().rev().nth(2).copied()
+        }
+    }
+}
+
+/// Everything that is wrong with single rules, or with a rule beside an earlier one. `surface` is the crystal's, if it has
+/// one; nothing if nobody knows.
+pub fn problems(instrument: &Instrument, rules: &[Rule], surface: Option<Option<&Reference>>) -> Vec<RuleProblem> {
+    let one = |(i, rule): (usize, &Rule)| {
+        let check = Check { instrument, earlier: rules.get(..i).unwrap_or(&[]), surface };
+        let problem = |(field, message)| RuleProblem { rule: i, word: rule.word(), field, message };
+        check.rule(rule).map_err(problem).err()
+    };
+    rules.iter().enumerate().filter_map(one).collect()
+}
+
+/// All checks that need no orientation.
+///
+/// # Errors
+/// The first problem: of a rule, of the count, of two rules that settle the same.
+pub(super) fn check(
+    instrument: &Instrument,
+    rules: &[Rule],
+    surface: Option<Option<&Reference>>,
+) -> Result<(), RuleError> {
+    let sample = moving_sample(instrument).count();
+    let detector = instrument.detector_axes().len();
+    let spare = sample as isize + detector as isize - 3;
+    if let Some(problem) = problems(instrument, rules, surface).into_iter().next() {
+        return Err(problem.into());
+    }
+    if let Some(clash) = clash(rules, instrument) {
+        return Err(clash);
+    }
+    if spare != rules.len() as isize {
+        return Err(RuleError::Count { sample, detector, spare, rules: rules.len() });
+    }
+    if detector > 2 {
+        return Err(RuleError::NotCovered(format!(
+            "a machine with {detector} detector axes is not covered; accepted are one or two"
+        )));
+    }
+    Ok(())
+}
+
+/// Two rules that settle the same freedom, even when the count fits.
+fn clash(rules: &[Rule], instrument: &Instrument) -> Option<RuleError> {
+    let pair_of = |freedom: &'static str, settles: &dyn Fn(&Rule) -> bool| {
+        let mut which = rules.iter().filter(|rule| settles(rule));
+        let (first, second) = (which.next()?, which.next()?);
+        Some(RuleError::SameFreedom { first: first.word().to_owned(), second: second.word().to_owned(), freedom })
+    };
+    let is_detector = |name: &AxisName| instrument.detector_axes().iter().any(|axis| axis.name == *name);
+    let of_detector = |rule: &Rule| match rule {
+        Rule::Hold { axis, .. } | Rule::Tie { axis, .. } => is_detector(axis),
+        Rule::DiffractionPlane { .. } => true,
+        _ => false,
+    };
+    let bisecting = |rule: &Rule| matches!(rule, Rule::Bisecting | Rule::BisectingAbout { .. });
+    pair_of("the azimuth", &Rule::settles_azimuth)
+        .or_else(|| pair_of("the plane that holds the spindle", &bisecting))
+        .or_else(|| pair_of("how the detector follows Q around the beam", &of_detector))
+}
+
+/// One rule against the machine and the rules before it.
+struct Check<'a> {
+    instrument: &'a Instrument,
+    earlier: &'a [Rule],
+    surface: Option<Option<&'a Reference>>,
+}
+
+type Refusal = (&'static str, String);
+
+impl Check<'_> {
+    fn rule(&self, rule: &Rule) -> Result<(), Refusal> {
+        if rule.needs_surface() {
+            return match self.surface {
+                None => Ok(()),
+                Some(None) => {
+                    Err(("", "the crystal has no surface; accepted is a crystal with one (crystal.surface)".to_owned()))
+                }
+                Some(Some(surface)) => direction(surface, "the surface normal", ""),
+            };
+        }
+        match rule {
+            Rule::Bisecting => self.bisecting(),
+            Rule::BisectingAbout { axis } => self.reference(axis),
+            Rule::Hold { axis, at_deg } => self.hold(axis, at_deg.get()),
+            Rule::Azimuth { reference, .. } => direction(reference, "the reference", "Azimuth.reference"),
+            Rule::Freest { reference, .. } => direction(reference, "the reference", "Freest.reference"),
+            Rule::Tie { axis, to, factor, .. } => self.tie(axis, to, factor.get()),
+            Rule::DiffractionPlane { .. } if self.instrument.detector_axes().len() < 2 => {
+                Err(("", "the only detector axis leaves no choice; accepted is a machine with two".to_owned()))
+            }
+            _ => Ok(()),
+        }
+    }
+
+    fn bisecting(&self) -> Result<(), Refusal> {
+        if moving_sample(self.instrument).count() < 3 {
+            // Where no angle is spare, the count says more.
+            let spare = moving_sample(self.instrument).count() + self.instrument.detector_axes().len() > 3;
+            let message = "the machine has no third sample axis from inside; accepted is BisectingAbout(axis: …)";
+            return if spare { Err(("", message.to_owned())) } else { Ok(()) };
+        }
+        Ok(())
+    }
+
+    fn reference(&self, name: &AxisName) -> Result<(), Refusal> {
+        let spindle = &self.instrument.sample_axes()[self.instrument.spindle()].name;
+        let others = || words(self.instrument.sample_axes().iter().map(|axis| &axis.name).filter(|n| *n != spindle));
+        let known = self.instrument.sample_axes().iter().any(|axis| axis.name == *name);
+        if !known || name == spindle {
+            let message =
+                format!("{name} cannot be the reference axis of spindle {spindle}; accepted is one of {}", others());
+            return Err(("BisectingAbout.axis", message));
+        }
+        Ok(())
+    }
+
+    /// An axis that a rule may settle. `field` is where its name stands.
+    fn own(&self, name: &AxisName, verb: &str, field: &'static str) -> Result<&Axis, Refusal> {
+        let instrument = self.instrument;
+        let free = settleable(instrument);
+        let accepted = words(free.iter().map(|axis| &axis.name));
+        let Some(axis) = instrument.axes().find(|axis| axis.name == *name) else {
+            return Err((field, format!("{} has no axis {name}; accepted is one of {accepted}", instrument.name())));
+        };
+        if axis.set_by_hand {
+            return Err((field, format!("{name} is set by hand and held already; accepted is one of {accepted}")));
+        }
+        if !free.iter().any(|axis| axis.name == *name) {
+            let message = format!("{name} is the only detector axis, which 2θ settles; accepted is one of {accepted}");
+            return Err((field, message));
+        }
+        let settled = |rule: &&Rule| match rule {
+            Rule::Hold { axis, .. } | Rule::Tie { axis, .. } => axis == name,
+            _ => false,
+        };
+        if let Some(other) = self.earlier.iter().find(settled) {
+            let message = match other {
+                Rule::Hold { .. } if verb == "held" => {
+                    format!("{name} is held by two rules; accepted is one rule for each axis")
+                }
+                other => format!(
+                    "{name} is {verb}, but another rule ({}) settles it; accepted is one rule for each axis",
+                    other.word()
+                ),
+            };
+            return Err((field, message));
+        }
+        Ok(axis)
+    }
+
+    fn hold(&self, name: &AxisName, at_deg: f64) -> Result<(), Refusal> {
+        let axis = self.own(name, "held", "Hold.axis")?;
+        let over = -axis.travel.check(at_deg).clearance_deg;
+        if over > LIMIT_DUST_DEG {
+            let intervals: Vec<String> = axis.travel.intervals_deg().map(|(a, b)| format!("{a}° to {b}°")).collect();
+            let message = format!(
+                "{at_deg}° lies {over:.4}° outside the limits of {name}; accepted is {} (overshoot taken off), or a full turn \
+                 from it",
+                intervals.join(" or ")
+            );
+            return Err(("Hold.at_deg", message));
+        }
+        Ok(())
+    }
+
+    fn tie(&self, name: &AxisName, to: &AxisName, factor: f64) -> Result<(), Refusal> {
+        self.own(name, "tied", "Tie.axis")?;
+        let moving = || {
+            words(self.instrument.axes().filter(|axis| !axis.set_by_hand && axis.name != *name).map(|axis| &axis.name))
+        };
+        let Some(other) = self.instrument.axes().find(|axis| axis.name == *to) else {
+            return Err((
+                "Tie.to",
+                format!("{} has no axis {to}; accepted is one of {}", self.instrument.name(), moving()),
+            ));
+        };
+        if to == name || other.set_by_hand {
+            return Err(("Tie.to", format!("{name} cannot follow {to}; accepted is one of {}", moving())));
+        }
+        let detector = |name: &AxisName| self.instrument.detector_axes().iter().any(|axis| axis.name == *name);
+        if detector(name) && !detector(to) {
+            return Err((
+                "Tie.axis",
+                format!("{name} is a detector axis; accepted is {to} tied to {name}, or two detector axes"),
+            ));
+        }
+        let follows_back = self
+            .earlier
+            .iter()
+            .any(|rule| matches!(rule, Rule::Tie { axis, to: back, .. } if axis == to && back == name));
+        if follows_back {
+            return Err(("Tie.to", format!("{to} follows {name} already; accepted is one tie for a pair of axes")));
+        }
+        if factor == 0.0 {
+            return Err(("Tie.factor", "0 ties nothing; accepted is another number, or the rule Hold".to_owned()));
+        }
+        Ok(())
+    }
+}
+
+fn direction(reference: &Reference, what: &str, field: &'static str) -> Result<(), Refusal> {
+    if reference.has_direction() {
+        return Ok(());
+    }
+    Err((field, format!("{what} {reference} has no direction; accepted are three numbers that are not all 0")))
+}
+
+/// Sample axes that move, and two detector axes.
+fn settleable(instrument: &Instrument) -> Vec<&Axis> {
+    let detector = match instrument.detector_axes() {
+        [_] => &[],
+        several => several,
+    };
+    instrument.sample_axes().iter().chain(detector).filter(|axis| !axis.set_by_hand).collect()
+}
+
+/// `a, b and c`.
+fn words<'a>(names: impl Iterator<Item = &'a AxisName>) -> String {
+    let names: Vec<&str> = names.map(AxisName::as_str).collect();
+    match names.as_slice() {
+        [] => "none".to_owned(),
+        [only] => (*only).to_owned(),
+        [most @ .., last] => format!("{} and {last}", most.join(", ")),
+    }
 }
 
 fn count_message(sample: usize, detector: usize, spare: isize, rules: usize) -> String {
@@ -131,7 +344,6 @@ fn count_message(sample: usize, detector: usize, spare: isize, rules: usize) -> 
         1 => "1 rule is given".to_owned(),
         n => format!("{n} rules are given"),
     };
-    let accepted =
-        if spare == 0 { "no rule" } else { "exactly one rule for each spare angle (Bisecting, or Hold of an axis)" };
+    let accepted = if spare == 0 { "no rule" } else { "exactly one rule for each spare angle" };
     format!("{machine}: {sample} + {detector} − 3 = {spare}, so {spare_text}, but {rules_text}; accepted is {accepted}")
 }

@@ -19,18 +19,23 @@ pub(super) struct Pair {
 
 /// One of the two ways to set the pair.
 #[derive(Debug, Clone, Copy)]
-struct PairAngles {
+pub(super) struct PairAngles {
     /// Angles of outer and inner axis in radians.
-    angles_rad: [f64; 2],
+    pub angles_rad: [f64; 2],
     /// What was free.
-    freedom: Freedom,
+    pub freedom: Freedom,
 }
 
 impl Pair {
     /// The two moving axes of a chain.
     pub fn new(chain: &Chain) -> Option<Self> {
         let [a1, a2] = chain.directions[..] else { return None };
-        Some(Self { outer: Dial::new(a1, &a2), inner: Dial::new(a2, &a1), between: HalfAngle::between(&a1, &a2) })
+        Some(Self::of(a1, a2))
+    }
+
+    /// Outer and inner axis, unit vectors.
+    pub fn of(a1: Vector3<f64>, a2: Vector3<f64>) -> Self {
+        Self { outer: Dial::new(a1, &a2), inner: Dial::new(a2, &a1), between: HalfAngle::between(&a1, &a2) }
     }
 
     /// Both ways to take the direction `carried` (a unit vector) onto Q̂ for each place of the detector. Fills the rows of
@@ -58,7 +63,7 @@ impl Pair {
     ///
     /// # Errors
     /// By how many radians the target is out of reach.
-    fn angles(&self, carried: &Vector3<f64>, target: &Vector3<f64>) -> Result<[PairAngles; 2], f64> {
+    pub fn angles(&self, carried: &Vector3<f64>, target: &Vector3<f64>) -> Result<[PairAngles; 2], f64> {
         let arm = HalfAngle::between(&self.inner.axis, carried);
         let wanted = HalfAngle::between(&self.outer.axis, target);
         let open = opening(self.between, arm, wanted).map_err(|miss| miss.by_rad)?;

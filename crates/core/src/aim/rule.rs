@@ -1,7 +1,8 @@
 use serde::{Deserialize, Serialize};
 
+use super::Reference;
 use crate::instrument::AxisName;
-use crate::quantity::Degrees;
+use crate::quantity::{Component, Degrees};
 
 /// A condition that settles one spare angle. A machine with n sample and m detector axes leaves n + m − 3 angles spare;
 /// see [`crate::conventions`] for the frames.
@@ -11,6 +12,11 @@ pub enum Rule {
     /// The spindle, where it points after the outer axes have turned, lies in the plane of Q and the reference axis, the
     /// third sample axis from inside. On a Eulerian cradle this is ω = θ or θ + 180°.
     Bisecting,
+    /// The same with another reference axis.
+    BisectingAbout {
+        /// The reference axis.
+        axis: AxisName,
+    },
     /// An axis stays at a reading.
     Hold {
         /// The axis.
@@ -18,6 +24,84 @@ pub enum Rule {
         /// Its reading in degrees.
         at_deg: Degrees,
     },
+    /// The azimuth ψ of a reference direction has a given value.
+    Azimuth {
+        /// What ψ counts from.
+        reference: Reference,
+        /// ψ in degrees.
+        at_deg: Degrees,
+    },
+    /// The incident beam makes an angle with the surface: sin α_i = −n·k̂_i, n the outward normal.
+    Incidence {
+        /// α_i in degrees.
+        at_deg: Degrees,
+    },
+    /// The diffracted beam makes an angle with the surface: sin α_f = n·k̂_f.
+    Exit {
+        /// α_f in degrees.
+        at_deg: Degrees,
+    },
+    /// Both beams make the same angle with the surface.
+    EqualIncidenceAndExit,
+    /// The reading of an axis is a multiple of another's, plus an offset.
+    Tie {
+        /// The axis that follows.
+        axis: AxisName,
+        /// The axis that it follows.
+        to: AxisName,
+        /// Degrees for each degree of the other.
+        factor: Component,
+        /// Its reading where the other reads 0.
+        offset_deg: Degrees,
+    },
+    /// For two detector axes: the plane of diffraction, through the beam, is turned by an angle about +z from the
+    /// horizontal plane x z. The detector may stand on either side of the beam.
+    DiffractionPlane {
+        /// The angle in degrees: 0 horizontal, 90 vertical.
+        turned_deg: Degrees,
+    },
+    /// The azimuth at which the axes stay farthest from every limit.
+    Freest {
+        /// What ψ counts from: of two azimuths as good as each other the one nearer to 0 is taken.
+        reference: Reference,
+        /// Degrees of ψ by which to keep clear of simultaneous reflections.
+        #[serde(default, skip_serializing_if = "Option::is_none")]
+        keep_clear_deg: Option<Degrees>,
+    },
+}
+
+impl Rule {
+    /// The name by which messages call it.
+    pub fn word(&self) -> &'static str {
+        match self {
+            Self::Bisecting | Self::BisectingAbout { .. } => "bisecting",
+            Self::Hold { .. } => "hold",
+            Self::Azimuth { .. } => "azimuth",
+            Self::Incidence { .. } => "incidence",
+            Self::Exit { .. } => "exit",
+            Self::EqualIncidenceAndExit => "equal incidence and exit",
+            Self::Tie { .. } => "tie",
+            Self::DiffractionPlane { .. } => "diffraction plane",
+            Self::Freest { .. } => "freest",
+        }
+    }
+
+    /// Whether it settles the azimuth and nothing else; of such rules there can be one.
+    pub fn settles_azimuth(&self) -> bool {
+        matches!(
+            self,
+            Self::Azimuth { .. }
+                | Self::Incidence { .. }
+                | Self::Exit { .. }
+                | Self::EqualIncidenceAndExit
+                | Self::Freest { .. }
+        )
+    }
+
+    /// Whether it needs the crystal's surface.
+    pub fn needs_surface(&self) -> bool {
+        matches!(self, Self::Incidence { .. } | Self::Exit { .. } | Self::EqualIncidenceAndExit)
+    }
 }
 
 /// How to choose among the settings of one reflection.

@@ -2,7 +2,7 @@ use super::attempts::{Attempt, Attempts, Freedom, MAX_BRANCHES};
 use super::bisecting::Bisecting;
 use super::chain::Chain;
 use super::detector::{DetectorArm, DetectorPlace};
-use super::fit::{RuleError, bisectable, held_readings};
+use super::fit::{self, RuleError, bisectable, held_readings};
 use super::pair::Pair;
 use super::rule::Rule;
 use crate::frames::{Head, Vector};
@@ -39,26 +39,28 @@ impl Solver {
     /// # Errors
     /// If the rules do not fit the machine; the count of spare angles is in the message.
     pub fn new(instrument: &Instrument, rules: &[Rule]) -> Result<Self, RuleError> {
+        fit::check(instrument, rules, None)?;
+        let short = "bisecting or hold on a machine with one detector axis across the beam";
+        Self::short(instrument, rules).ok_or_else(|| RuleError::NotCovered(format!("accepted is {short}")))
+    }
+
+    /// For rules that fit: nothing if the stack or the rules want the general road.
+    pub(super) fn short(instrument: &Instrument, rules: &[Rule]) -> Option<Self> {
         let held_deg = held_readings(instrument, rules)?;
-        let sample = held_deg.iter().filter(|held| held.is_none()).count();
-        let not_covered = || RuleError::NotCovered { sample, detector: instrument.detector_axes().len() };
-        let [detector_axis] = instrument.detector_axes() else { return Err(not_covered()) };
-        let arm = DetectorArm::new(&detector_axis.direction).ok_or_else(not_covered)?;
+        let [detector_axis] = instrument.detector_axes() else { return None };
+        let arm = DetectorArm::new(&detector_axis.direction)?;
         let chain = Chain::new(instrument, &held_deg);
         let method = match chain.indices.len() {
-            2 => Method::Pair(Pair::new(&chain).ok_or_else(not_covered)?),
-            3 if bisectable(instrument, &chain) => {
-                Method::Bisecting(Bisecting::new(&chain, &arm).ok_or(RuleError::NotBisectable)?)
-            }
-            3 => return Err(RuleError::NotBisectable),
-            _ => return Err(not_covered()),
+            2 => Method::Pair(Pair::new(&chain)?),
+            3 if bisectable(instrument, &chain) => Method::Bisecting(Bisecting::new(&chain, &arm)?),
+            _ => return None,
         };
         let (mut template_deg, mut zero_deg) = ([0.0; MAX_AXES], [0.0; MAX_AXES]);
         for (i, axis) in instrument.axes().enumerate() {
             template_deg[i] = held_deg.get(i).copied().flatten().unwrap_or(0.0);
             zero_deg[i] = axis.zero_offset_deg;
         }
-        Ok(Self { chain, arm, method, template_deg, zero_deg, axis_count: instrument.axis_count() })
+        Some(Self { chain, arm, method, template_deg, zero_deg, axis_count: instrument.axis_count() })
     }
 
     /// The sample axes that move, as positions among all axes.

@@ -45,7 +45,7 @@ impl<'a, W: Write> ReachWriter<'a, W> {
     /// If they cannot be written.
     pub fn every_setting(&mut self, row: &ReachRow, settings: &Settings) -> io::Result<()> {
         match settings {
-            Settings::Outside(_) => self.reflection(row),
+            Settings::None(_) => self.reflection(row),
             Settings::Judged(all) => {
                 for judged in all {
                     let detail = judged.verdict.detail(self.instrument);

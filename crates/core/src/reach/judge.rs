@@ -1,15 +1,22 @@
+use std::sync::Arc;
+
 use crate::aim::{
-    Attempt, Attempts, Branch, Freedom, MAX_BRANCHES, OutsideSphere, Preference, Rule, RuleError, Solver,
+    Attempt, Attempts, Branch, CrystalOnHead, Freedom, MAX_BRANCHES, NoSetting, Preference, Road, Rule, RuleError,
+    Solver,
 };
 use crate::frames::{Head, Vector};
 use crate::instrument::{Instrument, LIMIT_DUST_DEG, MAX_AXES, Setting, Travel};
 
 use super::Verdict;
+use super::constraint::{AboveSurface, Constraint, Scan};
+use super::freest::Freest;
 
 /// Judges every setting of a reflection against the machine's limits, and chooses among those allowed.
 #[derive(Debug, Clone)]
 pub struct Judge {
-    solver: Solver,
+    road: Road,
+    constraints: Vec<Arc<dyn Constraint>>,
+    freest: Option<Freest>,
     travel: Vec<Travel>,
     /// Whether an axis counts in the measure *farthest from every limit*: moving sample axes do.
     counts: [bool; MAX_AXES],
@@ -47,8 +54,8 @@ pub struct Judgement {
 /// Every setting of one reflection.
 #[derive(Debug, Clone, PartialEq)]
 pub enum Settings {
-    /// The node is beyond the sphere.
-    Outside(OutsideSphere),
+    /// There is none, whatever the axes.
+    None(NoSetting),
     /// One entry for each closed-form solution, equal ones merged.
     Judged(Vec<JudgedSetting>),
 }
@@ -66,14 +73,40 @@ const BELOW_ALL_ALLOWED: f64 = -1e6;
 const MORE_THAN_ANY_LIMIT_DEG: f64 = 1e5;
 
 impl Judge {
-    /// Prepares a machine under a set of rules and a preference.
+    /// Prepares a machine under a set of rules and a preference, for rules that ask nothing of the crystal.
+    ///
+    /// # Errors
+    /// If the rules do not fit the machine, or if they need a crystal.
+    pub fn new(instrument: &Instrument, rules: &[Rule], preference: &Preference) -> Result<Self, RuleError> {
+        Self::prepare(instrument, rules, preference, None)
+    }
+
+    /// [`Self::new`] for a crystal whose orientation is known: every rule will do, and beams from below its surface are
+    /// refused.
     ///
     /// # Errors
     /// If the rules do not fit the machine.
-    pub fn new(instrument: &Instrument, rules: &[Rule], preference: &Preference) -> Result<Self, RuleError> {
-        let solver = Solver::new(instrument, rules)?;
+    pub fn for_crystal(
+        instrument: &Instrument,
+        rules: &[Rule],
+        preference: &Preference,
+        crystal: &CrystalOnHead,
+    ) -> Result<Self, RuleError> {
+        Self::prepare(instrument, rules, preference, Some(crystal))
+    }
+
+    fn prepare(
+        instrument: &Instrument,
+        rules: &[Rule],
+        preference: &Preference,
+        crystal: Option<&CrystalOnHead>,
+    ) -> Result<Self, RuleError> {
+        let road = Road::new(instrument, rules, crystal)?;
+        let surface = crystal.and_then(|crystal| AboveSurface::new(instrument, crystal.surface.as_ref()?, &crystal.ub));
+        let constraints = surface.map(|surface| Arc::new(surface) as Arc<dyn Constraint>).into_iter().collect();
+        let freest = Freest::new(instrument, rules, crystal)?;
         let mut counts = [false; MAX_AXES];
-        for &axis in solver.moving_sample_axes() {
+        for &axis in road.moving_sample_axes() {
             counts[axis] = true;
         }
         let preferred_deg = match preference {
@@ -93,19 +126,30 @@ impl Judge {
         let limited = travel.iter().enumerate().filter_map(limited).collect();
         let cone_deg = instrument.direct_beam_half_angle_deg();
         let sin_half_cone = (0.5 * cone_deg).to_radians().sin();
-        Ok(Self { solver, travel, counts, limited, preferred_deg, cone_deg, sin_half_cone })
+        Ok(Self { road, constraints, freest, travel, counts, limited, preferred_deg, cone_deg, sin_half_cone })
     }
 
-    /// The solver underneath.
-    pub fn solver(&self) -> &Solver {
-        &self.solver
+    /// From a node to every setting.
+    pub fn road(&self) -> &Road {
+        &self.road
     }
 
-    /// Every setting of the reflection at `q_in_head` = U B h in Å⁻¹, for a wavelength in Å.
+    /// Whether the short road serves, whose settings are scored a row at a time.
+    fn short(&self) -> Option<&Solver> {
+        self.road.solver().filter(|_| self.constraints.is_empty())
+    }
+
+    /// Room for [`Self::verdict_in`].
+    pub fn room(&self) -> Room {
+        Room(self.short().map(Solver::attempts))
+    }
+
+    /// Every setting of the reflection at `q_in_head` = U B h in Å⁻¹, for a wavelength in Å. Under *freest* those at the
+    /// azimuth chosen.
     pub fn every_setting(&self, q_in_head: Vector<Head>, wavelength_angstrom: f64) -> Settings {
         let cone = self.cone_verdict(q_in_head, wavelength_angstrom);
         let mut all: Vec<JudgedSetting> = Vec::with_capacity(8);
-        let solved = self.solver.each_attempt(q_in_head, wavelength_angstrom, |attempt| {
+        let solved = self.each_attempt(q_in_head, wavelength_angstrom, &mut |attempt| {
             let mut judged = self.judge(&attempt);
             if let Some(verdict) = cone {
                 judged.verdict = verdict;
@@ -116,16 +160,64 @@ impl Judge {
         });
         match solved {
             Ok(()) => Settings::Judged(all),
-            Err(outside) => Settings::Outside(outside),
+            Err(none) => Settings::None(none),
         }
     }
 
-    /// The verdict on one reflection and the setting chosen. `attempts` is room made by [`Solver::attempts`].
+    fn each_attempt(
+        &self,
+        q_in_head: Vector<Head>,
+        wavelength_angstrom: f64,
+        found: &mut dyn FnMut(Attempt),
+    ) -> Result<(), NoSetting> {
+        match &self.freest {
+            Some(freest) => {
+                let psi_rad = freest.azimuth_rad(self, q_in_head, wavelength_angstrom)?;
+                self.road.each_attempt_at(q_in_head, wavelength_angstrom, psi_rad, found)
+            }
+            None => self.road.each_attempt(q_in_head, wavelength_angstrom, found),
+        }
+    }
+
+    /// The verdict where the settings are not kept in rows: one after another, the best so far.
+    fn verdict_one_by_one(&self, q_in_head: Vector<Head>, wavelength_angstrom: f64) -> Judgement {
+        let mut best: Option<(f64, JudgedSetting)> = None;
+        let solved = self.each_attempt(q_in_head, wavelength_angstrom, &mut |attempt| {
+            let judged = self.judge(&attempt);
+            let merit = self.merit(&judged);
+            if best.is_none_or(|(other, _)| merit > other + BETTER_BY_DEG) {
+                best = Some((merit, judged));
+            }
+        });
+        match (solved, best) {
+            (Ok(()), Some((_, mut judged))) => {
+                if let Some(verdict) = self.cone_verdict(q_in_head, wavelength_angstrom) {
+                    judged.verdict = verdict;
+                }
+                Judgement { verdict: judged.verdict, setting: Some(judged) }
+            }
+            (Ok(()), None) => Judgement { verdict: Verdict::CannotMake { by_deg: 180.0 }, setting: None },
+            (Err(none), _) => Judgement { verdict: none.into(), setting: None },
+        }
+    }
+
+    /// What the preference makes of a setting, in degrees: more is better. Any allowed setting beats any that misses.
+    pub(super) fn merit(&self, judged: &JudgedSetting) -> f64 {
+        match (judged.verdict, &judged.setting, &self.preferred_deg) {
+            (Verdict::Reachable, Some(setting), Some(wanted)) => self.nearness(setting, wanted),
+            (Verdict::Reachable, ..) => judged.clearance_deg.min(MORE_THAN_ANY_LIMIT_DEG),
+            (verdict, ..) => BELOW_ALL_ALLOWED - verdict.miss_deg().unwrap_or(360.0),
+        }
+    }
+
+    /// The verdict on one reflection and the setting chosen, in room made by [`Self::room`].
     #[inline]
-    pub fn verdict_in(&self, q_in_head: Vector<Head>, wavelength_angstrom: f64, attempts: &mut Attempts) -> Judgement {
-        if let Err(outside) = self.solver.solve(q_in_head, wavelength_angstrom, attempts) {
-            let longest_wavelength_angstrom = outside.longest_wavelength_angstrom;
-            return Judgement { verdict: Verdict::OutsideSphere { longest_wavelength_angstrom }, setting: None };
+    pub fn verdict_in(&self, q_in_head: Vector<Head>, wavelength_angstrom: f64, room: &mut Room) -> Judgement {
+        let (Some(solver), Some(attempts)) = (self.short(), &mut room.0) else {
+            return self.verdict_one_by_one(q_in_head, wavelength_angstrom);
+        };
+        if let Err(outside) = solver.solve(q_in_head, wavelength_angstrom, attempts) {
+            return Judgement { verdict: NoSetting::Outside(outside).into(), setting: None };
         }
         let merits = self.merits(attempts);
         let (mut best, mut best_merit) = (0, merits[0]);
@@ -143,12 +235,12 @@ impl Judge {
 
     /// [`Self::verdict_in`] with room made for the purpose.
     pub fn verdict(&self, q_in_head: Vector<Head>, wavelength_angstrom: f64) -> Judgement {
-        self.verdict_in(q_in_head, wavelength_angstrom, &mut self.solver.attempts())
+        self.verdict_in(q_in_head, wavelength_angstrom, &mut self.room())
     }
 
     /// The cone holds for every setting of a reflection, because it depends on 2θ alone.
     #[inline]
-    fn cone_verdict(&self, q_in_head: Vector<Head>, wavelength_angstrom: f64) -> Option<Verdict> {
+    pub(super) fn cone_verdict(&self, q_in_head: Vector<Head>, wavelength_angstrom: f64) -> Option<Verdict> {
         let sin_theta = 0.5 * wavelength_angstrom * q_in_head.norm();
         if sin_theta > self.sin_half_cone {
             return None;
@@ -158,7 +250,7 @@ impl Judge {
     }
 
     #[inline]
-    fn judge(&self, attempt: &Attempt) -> JudgedSetting {
+    pub(super) fn judge(&self, attempt: &Attempt) -> JudgedSetting {
         match *attempt {
             Attempt::CannotMake { branch, by_deg } => JudgedSetting {
                 branch,
@@ -193,7 +285,13 @@ impl Judge {
         } else {
             Verdict::Reachable
         };
-        JudgedSetting { branch, setting: Some(Setting::new(&readings[..given.len()])), freedom, verdict, clearance_deg }
+        let setting = Setting::new(&readings[..given.len()]);
+        let refusal = if verdict.is_reachable() { self.refusal(setting) } else { None };
+        JudgedSetting { branch, setting: Some(setting), freedom, verdict: refusal.unwrap_or(verdict), clearance_deg }
+    }
+
+    fn refusal(&self, setting: Setting) -> Option<Verdict> {
+        self.constraints.iter().find_map(|constraint| constraint.refusal(&Scan::at(setting)))
     }
 
     /// What the preference makes of each branch, in degrees: more is better. Any allowed setting beats any that misses.
@@ -233,6 +331,21 @@ impl Judge {
             wanted.map_or(0.0, |near| (travel.check_near(reading, near).reading_deg - near).abs())
         });
         -turns.fold(0.0, f64::max)
+    }
+}
+
+/// Room for the settings of one reflection, used again for the next.
+#[derive(Debug, Clone)]
+pub struct Room(Option<Attempts>);
+
+impl From<NoSetting> for Verdict {
+    fn from(none: NoSetting) -> Self {
+        match none {
+            NoSetting::Outside(outside) => {
+                Self::OutsideSphere { longest_wavelength_angstrom: outside.longest_wavelength_angstrom }
+            }
+            NoSetting::NoAzimuth(why) => Self::NoAzimuth { why },
+        }
     }
 }
 

@@ -78,11 +78,11 @@ impl ReachTable {
             .zip(readings_deg.par_chunks_mut(STRETCH * axis_count.max(1)))
             .zip(wanted.hkl.par_chunks(STRETCH))
             .all(|(((d, verdict), readings), hkl)| {
-                let mut attempts = judge.solver().attempts();
+                let mut room = judge.room();
                 for (i, hkl) in hkl.iter().enumerate() {
                     let node = Vector::from_raw(ub * hkl.to_vector());
                     d[i] = 1.0 / node.norm();
-                    let judgement = judge.verdict_in(node, wavelength_angstrom, &mut attempts);
+                    let judgement = judge.verdict_in(node, wavelength_angstrom, &mut room);
                     verdict[i] = judgement.verdict;
                     if judgement.verdict.is_reachable()
                         && let Some(setting) = judgement.setting.and_then(|s| s.setting)

@@ -1,3 +1,4 @@
+use crate::aim::NoAzimuth;
 use crate::instrument::Instrument;
 
 /// Whether a reflection or a setting can be measured, and if not why: the reason is a value, not a text.
@@ -27,11 +28,24 @@ pub enum Verdict {
         /// By how many degrees.
         by_deg: f64,
     },
+    /// The rules want an azimuth, and the reflection has none.
+    NoAzimuth {
+        /// Why.
+        why: NoAzimuth,
+    },
+    /// A beam would come from below the crystal's surface.
+    BelowSurface {
+        /// The incident beam, or else the diffracted one.
+        incident: bool,
+        /// By how many degrees.
+        by_deg: f64,
+    },
 }
 
 impl Verdict {
     /// Every kind of verdict by the word that tables carry.
-    pub const WORDS: [&str; 5] = ["reachable", "outside_sphere", "direct_beam", "cannot_make", "over_limit"];
+    pub const WORDS: [&str; 7] =
+        ["reachable", "outside_sphere", "direct_beam", "cannot_make", "over_limit", "no_azimuth", "below_surface"];
 
     /// Whether it can be measured.
     pub fn is_reachable(self) -> bool {
@@ -46,6 +60,8 @@ impl Verdict {
             Self::InDirectBeam { .. } => 2,
             Self::CannotMake { .. } => 3,
             Self::OverLimit { .. } => 4,
+            Self::NoAzimuth { .. } => 5,
+            Self::BelowSurface { .. } => 6,
         }
     }
 
@@ -67,16 +83,27 @@ impl Verdict {
                 let name = instrument.axes().nth(usize::from(axis)).map_or("?", |axis| axis.name.as_str());
                 format!("{name} over its limit by {by_deg:.3}°")
             }
+            Self::NoAzimuth { why: NoAzimuth::ReferenceAlongQ } => {
+                "no azimuth: the reference direction is parallel to Q".to_owned()
+            }
+            Self::NoAzimuth { why: NoAzimuth::StraightBack } => {
+                "no azimuth: 2θ is 180°, both beams lie along one line".to_owned()
+            }
+            Self::BelowSurface { incident, by_deg } => {
+                let beam = if incident { "incident" } else { "diffracted" };
+                format!("{beam} beam below the surface by {by_deg:.3}°")
+            }
         }
     }
 
     /// Degrees by which a setting misses; nothing where degrees are not the measure.
     pub fn miss_deg(self) -> Option<f64> {
         match self {
-            Self::Reachable | Self::OutsideSphere { .. } => None,
-            Self::InDirectBeam { by_deg } | Self::CannotMake { by_deg } | Self::OverLimit { by_deg, .. } => {
-                Some(by_deg)
-            }
+            Self::Reachable | Self::OutsideSphere { .. } | Self::NoAzimuth { .. } => None,
+            Self::InDirectBeam { by_deg }
+            | Self::CannotMake { by_deg }
+            | Self::OverLimit { by_deg, .. }
+            | Self::BelowSurface { by_deg, .. } => Some(by_deg),
         }
     }
 }

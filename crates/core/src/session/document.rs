@@ -2,7 +2,7 @@ use std::collections::BTreeMap;
 
 use serde::{Deserialize, Serialize};
 
-use crate::aim::{Preference, Rule};
+use crate::aim::{Preference, Reference, Rule};
 use crate::crystal::SymmetryQuery;
 use crate::instrument::{AxisName, MachineDescription};
 use crate::quantity::{AngleUncertainty, CellAngle, Component, Degrees, Duration, Index, Length};
@@ -51,6 +51,9 @@ pub struct CrystalDocument {
     pub cell: CellDocument,
     /// Its space group, or only its centring.
     pub symmetry: SymmetryQuery,
+    /// The outward normal of its surface, if it has one: a beam from below it is a verdict of its own.
+    #[serde(default, skip_serializing_if = "Option::is_none")]
+    pub surface: Option<Reference>,
 }
 
 /// The six numbers of a cell.

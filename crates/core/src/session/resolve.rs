@@ -5,7 +5,7 @@ mod peaks;
 mod targets;
 mod wishes;
 
-use crate::aim::{Preference, Rule};
+use crate::aim::{Preference, Reference, Rule};
 use crate::crystal::{SpaceGroup, UnitCell};
 use crate::instrument::Instrument;
 use crate::orient::Orientation;
@@ -31,7 +31,9 @@ pub struct Resolved {
     pub instrument: Instrument,
     /// Every peak in the order of the document, also those that are ignored.
     pub peaks: Vec<Peak>,
-    /// Rules, each of which fits the machine. Whether they settle all spare angles, [`crate::aim::Solver::new`] tells.
+    /// The outward normal of the crystal's surface, if it has one.
+    pub surface: Option<Reference>,
+    /// Rules, each of which fits the machine. Whether they settle all spare angles, [`crate::aim::Road::new`] tells.
     pub rules: Vec<Rule>,
     /// The choice among settings.
     pub preference: Preference,
@@ -93,6 +95,7 @@ impl Session {
                     wavelength_angstrom: self.radiation.wavelength_angstrom(),
                     instrument,
                     peaks,
+                    surface: self.crystal.surface,
                     rules: self.rules.clone(),
                     preference: self.preference.clone(),
                     targets: self.targets.clone(),

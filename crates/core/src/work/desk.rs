@@ -3,7 +3,7 @@ use std::sync::{Arc, Mutex, MutexGuard, PoisonError};
 use nalgebra::Matrix3;
 
 use super::{Oriented, WorkError};
-use crate::aim::{Preference, Rule};
+use crate::aim::{Preference, Reference, Rule};
 use crate::crystal::{SpaceGroup, UnitCell};
 use crate::instrument::Instrument;
 use crate::orient::Orientation;
@@ -50,6 +50,7 @@ struct WantedInputs {
 struct ReachInputs {
     wanted: SameArc<Wanted>,
     ub: Matrix3<f64>,
+    surface: Option<Reference>,
     wavelength_angstrom: f64,
     instrument: Instrument,
     rules: Vec<Rule>,
@@ -111,11 +112,12 @@ impl Desk {
     /// As there, and if there is no orientation.
     pub fn reach(&self, inputs: &Resolved, pace: &impl Pace) -> Result<Arc<ReachTable>, WorkError> {
         let oriented = self.oriented(inputs)?;
-        let judge = super::judge(inputs)?;
+        let judge = super::judge(inputs, &oriented.orientation.ub)?;
         let wanted = self.wanted(inputs, pace)?;
         let key = ReachInputs {
             wanted: SameArc(wanted.clone()),
             ub: oriented.orientation.ub,
+            surface: inputs.surface,
             wavelength_angstrom: inputs.wavelength_angstrom,
             instrument: inputs.instrument.clone(),
             rules: inputs.rules.clone(),

@@ -124,7 +124,7 @@ impl Shape for Spot {
     fn draw(&self, frame: &Frame, strip: &mut Strip<'_>) {
         match self.mark {
             Mark::Disc => self.draw_ball(frame, strip),
-            Mark::Ring | Mark::Square | Mark::Diamond | Mark::Triangle => self.draw_flat(frame, strip),
+            _ => self.draw_flat(frame, strip),
         }
     }
 }
@@ -136,6 +136,8 @@ const SQUARE_HALF: f32 = 0.886_227;
 const DIAMOND_HALF: f32 = 1.253_314;
 /// Inner radius of the triangle, √(π / 3√3); its corners are twice as far out.
 const TRIANGLE_INNER: f32 = 0.777_560;
+/// Half width and half height of the bar: their product is π / 4.
+const BAR_HALF: [f32; 2] = [0.55, 1.427_997];
 
 /// How far a mark reaches from its centre, in radii.
 fn extent(mark: Mark) -> f64 {
@@ -143,7 +145,8 @@ fn extent(mark: Mark) -> f64 {
         Mark::Disc | Mark::Ring => 1.0,
         Mark::Square => f64::from(SQUARE_HALF),
         Mark::Diamond => f64::from(DIAMOND_HALF),
-        Mark::Triangle => 2.0 * f64::from(TRIANGLE_INNER),
+        Mark::Triangle | Mark::Wedge => 2.0 * f64::from(TRIANGLE_INNER),
+        Mark::Bar => f64::from(BAR_HALF[1]),
     }
 }
 
@@ -157,6 +160,8 @@ fn outward(mark: Mark, right: f32, down: f32) -> f32 {
             let slope = 0.866_025 * right.abs() - 0.5 * down;
             slope.max(down) / TRIANGLE_INNER
         }
+        Mark::Wedge => outward(Mark::Triangle, right, -down),
+        Mark::Bar => (right.abs() / BAR_HALF[0]).max(down.abs() / BAR_HALF[1]),
     }
 }
 
@@ -167,7 +172,7 @@ mod tests {
     #[test]
     fn all_marks_have_the_area_of_the_disc() {
         let steps = 800;
-        for mark in [Mark::Disc, Mark::Ring, Mark::Square, Mark::Diamond, Mark::Triangle] {
+        for mark in [Mark::Disc, Mark::Ring, Mark::Square, Mark::Diamond, Mark::Triangle, Mark::Wedge, Mark::Bar] {
             let at = |i: i32| (i as f32 + 0.5) / steps as f32 * 4.0 - 2.0;
             let mut inside = 0_u32;
             for i in 0..steps {

@@ -49,6 +49,12 @@ fn words(rule: &Rule) -> String {
     match rule {
         Rule::Bisecting => "bisecting".to_owned(),
         Rule::Hold { axis, at_deg } => format!("hold {axis} at {}°", figure(at_deg.get())),
+        Rule::Tie { axis, to, .. } => format!("{axis} tied to {to}"),
+        Rule::Azimuth { at_deg, .. } => format!("azimuth {}°", figure(at_deg.get())),
+        Rule::Incidence { at_deg } => format!("incidence {}°", figure(at_deg.get())),
+        Rule::Exit { at_deg } => format!("exit {}°", figure(at_deg.get())),
+        Rule::BisectingAbout { axis } => format!("bisecting about {axis}"),
+        other => other.word().to_owned(),
     }
 }
 
@@ -86,6 +92,7 @@ fn rule_kind(ui: &mut Ui, rule: &mut Rule, machine: Option<&Instrument>, i: usiz
     let text = match rule {
         Rule::Bisecting => "bisecting".to_owned(),
         Rule::Hold { axis, .. } => format!("hold {axis}"),
+        other => words(other),
     };
     let combo = ComboBox::from_id_salt(("rule", i)).width(96.0).selected_text(text);
     let shown = combo.show_ui(ui, |ui| {

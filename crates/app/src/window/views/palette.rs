@@ -17,12 +17,23 @@ pub enum Kind {
     CannotMake,
     /// An axis would pass its limit.
     OverLimit,
+    /// The rules want an azimuth, and there is none.
+    NoAzimuth,
+    /// A beam would come from below the surface.
+    BelowSurface,
 }
 
 impl Kind {
     /// Every kind, in the order of [`Verdict::WORDS`].
-    pub const ALL: [Self; Verdict::WORDS.len()] =
-        [Self::Reachable, Self::OutsideSphere, Self::DirectBeam, Self::CannotMake, Self::OverLimit];
+    pub const ALL: [Self; Verdict::WORDS.len()] = [
+        Self::Reachable,
+        Self::OutsideSphere,
+        Self::DirectBeam,
+        Self::CannotMake,
+        Self::OverLimit,
+        Self::NoAzimuth,
+        Self::BelowSurface,
+    ];
 
     /// The kind of a verdict.
     pub fn of(verdict: Verdict) -> Self {
@@ -32,6 +43,8 @@ impl Kind {
             Verdict::InDirectBeam { .. } => Self::DirectBeam,
             Verdict::CannotMake { .. } => Self::CannotMake,
             Verdict::OverLimit { .. } => Self::OverLimit,
+            Verdict::NoAzimuth { .. } => Self::NoAzimuth,
+            Verdict::BelowSurface { .. } => Self::BelowSurface,
         }
     }
 
@@ -43,6 +56,8 @@ impl Kind {
             Self::DirectBeam => "direct beam",
             Self::CannotMake => "cannot make",
             Self::OverLimit => "over limit",
+            Self::NoAzimuth => "no azimuth",
+            Self::BelowSurface => "below surface",
         }
     }
 
@@ -54,6 +69,8 @@ impl Kind {
             Self::DirectBeam => "2θ is so small that the detector would stand in the cone about the direct beam.",
             Self::CannotMake => "The axes cannot turn the crystal or the detector to where the condition is met.",
             Self::OverLimit => "Settings exist, but each takes some axis past its limit.",
+            Self::NoAzimuth => "The rules want an azimuth, but the reference is parallel to Q, or 2θ is 180°.",
+            Self::BelowSurface => "The incident or the diffracted beam would come from below the crystal's surface.",
         }
     }
 
@@ -65,6 +82,8 @@ impl Kind {
             Self::DirectBeam => Mark::Square,
             Self::CannotMake => Mark::Diamond,
             Self::OverLimit => Mark::Triangle,
+            Self::NoAzimuth => Mark::Wedge,
+            Self::BelowSurface => Mark::Bar,
         }
     }
 
@@ -135,6 +154,8 @@ const DARK: Palette = Palette {
         Color32::from_rgb(0xF0, 0xE4, 0x42),
         Color32::from_rgb(0xA0, 0x50, 0x8F),
         Color32::from_rgb(0xD5, 0x5E, 0x00),
+        Color32::from_rgb(0x90, 0x30, 0xF0),
+        Color32::from_rgb(0xF0, 0xA8, 0x78),
     ],
     background: Color32::from_rgb(0x12, 0x16, 0x1C),
     ink: Color32::from_rgb(0xE4, 0xE8, 0xEE),
@@ -153,6 +174,8 @@ const LIGHT: Palette = Palette {
         Color32::from_rgb(0x4A, 0x45, 0x00),
         Color32::from_rgb(0x7A, 0x1F, 0x6B),
         Color32::from_rgb(0xD5, 0x5E, 0x00),
+        Color32::from_rgb(0x90, 0x30, 0xF0),
+        Color32::from_rgb(0x18, 0x00, 0x90),
     ],
     background: Color32::from_rgb(0xFB, 0xFC, 0xFD),
     ink: Color32::from_rgb(0x1D, 0x23, 0x2B),
@@ -202,6 +225,14 @@ pub fn paint_mark(painter: &Painter, centre: Pos2, radius: f32, mark: Mark, colo
         Mark::Triangle => {
             let (aside, down) = (reach * 0.866, reach * 0.5);
             corners(&[vec2(0.0, -reach), vec2(aside, down), vec2(-aside, down)])
+        }
+        Mark::Wedge => {
+            let (aside, up) = (reach * 0.866, reach * 0.5);
+            corners(&[vec2(-aside, -up), vec2(aside, -up), vec2(0.0, reach)])
+        }
+        Mark::Bar => {
+            let (wide, high) = (radius * 0.55, radius * 1.428);
+            corners(&[vec2(-wide, -high), vec2(wide, -high), vec2(wide, high), vec2(-wide, high)])
         }
     };
     painter.add(shape);

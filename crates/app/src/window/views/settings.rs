@@ -1,6 +1,6 @@
 use std::sync::Arc;
 
-use ringwright_core::aim::OutsideSphere;
+use ringwright_core::aim::NoSetting;
 use ringwright_core::frames::Hkl;
 use ringwright_core::instrument::Setting;
 use ringwright_core::reach::{JudgedSetting, Settings, Verdict};
@@ -15,7 +15,7 @@ pub struct PickedSettings {
     all: Vec<JudgedSetting>,
     /// Whether the first of them is reachable, so that it was chosen and not merely missed least.
     chosen: bool,
-    outside: Option<OutsideSphere>,
+    none: Option<NoSetting>,
     shown: usize,
 }
 
@@ -31,7 +31,7 @@ impl PickedSettings {
         }
         *self = Self { made_for: Some((Arc::clone(reach), hkl)), ..Self::default() };
         match reach.settings(hkl) {
-            Settings::Outside(outside) => self.outside = Some(outside),
+            Settings::None(none) => self.none = Some(none),
             Settings::Judged(all) => {
                 self.all = ordered(all, reach, hkl);
                 self.chosen = self.all.first().is_some_and(|s| s.verdict.is_reachable());
@@ -49,9 +49,9 @@ impl PickedSettings {
         self.chosen
     }
 
-    /// Set if the node lies outside the sphere, so that there is no setting at all.
-    pub fn outside(&self) -> Option<OutsideSphere> {
-        self.outside
+    /// Set if there is no setting at all, whatever the axes.
+    pub fn none(&self) -> Option<NoSetting> {
+        self.none
     }
 
     /// The place in [`Self::all`] of the one that is shown.

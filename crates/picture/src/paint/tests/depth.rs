@@ -142,7 +142,8 @@ fn rings_are_hollow_and_marks_differ() {
         let canvas = painted(&scene, &level_eye(), 40, 40, 1);
         (0..1600).map(|i| canvas.id_at(i % 40, i / 40).is_some()).collect::<Vec<_>>()
     };
-    let marks = [Mark::Disc, Mark::Ring, Mark::Square, Mark::Diamond, Mark::Triangle].map(shape);
+    let marks =
+        [Mark::Disc, Mark::Ring, Mark::Square, Mark::Diamond, Mark::Triangle, Mark::Wedge, Mark::Bar].map(shape);
     assert!(marks[0][20 * 40 + 20] && !marks[1][20 * 40 + 20] && marks[1][20 * 40 + 11]);
     for i in 0..5 {
         for j in 0..i {

@@ -35,7 +35,8 @@ fn any_scene() -> impl Strategy<Value = Scene> {
         |(things, fade_radius, most, background)| {
             let mut scene = Scene { background, fade: Some(Fade { radius: fade_radius, most }), ..Scene::default() };
             for (corners @ [from, to, third], size, other, colour, id) in things {
-                let marks = [Mark::Disc, Mark::Ring, Mark::Square, Mark::Diamond, Mark::Triangle];
+                let marks =
+                    [Mark::Disc, Mark::Ring, Mark::Square, Mark::Diamond, Mark::Triangle, Mark::Wedge, Mark::Bar];
                 let mark = marks[id as usize % 5];
                 let radius = if id % 2 == 0 { Size::World(size) } else { Size::Pixels(size) };
                 let dash = Some(Dash { on_px: size, off_px: other });

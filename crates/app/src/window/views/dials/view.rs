@@ -1,5 +1,5 @@
 use egui::{Ui, vec2};
-use ringwright_core::aim::{Preference, Rule};
+use ringwright_core::aim::{NoSetting, Preference, Rule};
 use ringwright_core::frames::Hkl;
 use ringwright_core::instrument::Axis;
 use ringwright_core::reach::JudgedSetting;
@@ -7,6 +7,7 @@ use ringwright_core::reach::JudgedSetting;
 use super::super::super::{Picked, Reach, Results};
 use super::super::number::{fixed, indices};
 use super::super::settings::PickedSettings;
+
 use super::gauge::{Reading, gauge};
 use super::list::{in_words, settings_list};
 
@@ -16,7 +17,12 @@ pub fn axis_dials(ui: &mut Ui, results: &Results, picked: &Picked, settings: &mu
         return empty(ui, results.reach.is_some());
     };
     title(ui, reach, hkl);
-    if let Some(outside) = settings.outside() {
+    if let Some(none) = settings.none() {
+        let NoSetting::Outside(outside) = none else {
+            let verdict = ringwright_core::reach::Verdict::from(none);
+            ui.label(format!("No setting: {}.", verdict.detail(&reach.instrument)));
+            return;
+        };
         let longest = fixed(outside.longest_wavelength_angstrom, 4);
         ui.label(format!(
             "Outside the sphere: no setting exists at {} Å. A wavelength of {longest} Å or less would reach it.",
