@@ -16,21 +16,22 @@ use ringwright_core::quantity::Component;
 
 const WAVELENGTH_ANGSTROM: f64 = 0.71073;
 
-/// Busing & Levy's senses in our frame: ω, φ and 2θ about (0, −1, 0), κ about (0, −cos 50°, sin 50°).
+/// Busing & Levy's senses in our frame: ω, φ and 2θ about (0, −1, 0), κ about (0, −cos 50°, sin 50°), which is inclined from
+/// it towards +z by 50° as the built-in one is.
 fn machine() -> Instrument {
     let mut description = built_in_machine("kappa-four-circle").unwrap().description().clone();
     let component = |x: f64| Component::new(x).unwrap();
-    let alpha = 50f64.to_radians();
     let down = (component(0.0), component(-1.0), component(0.0));
     let names: Vec<&str> = description.sample_axes.iter().map(|axis| axis.name.as_str()).collect();
     assert_eq!(names, ["omega", "kappa", "phi"]);
     for axis in description.sample_axes.iter_mut().chain(&mut description.detector_axes) {
-        axis.direction = match axis.name.as_str() {
-            "kappa" => (component(0.0), component(-alpha.cos()), component(alpha.sin())),
-            _ => down,
-        };
+        axis.direction = down;
     }
-    Instrument::new(description).unwrap()
+    let machine = Instrument::new(description).unwrap();
+    let alpha = 50f64.to_radians();
+    let kappa = machine.sample_axes()[1].direction.into_inner();
+    assert!((kappa - Vector3::new(0.0, -alpha.cos(), alpha.sin())).norm() < 1e-15);
+    machine
 }
 
 fn peaks() -> Vec<Peak> {

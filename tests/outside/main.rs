@@ -13,5 +13,6 @@ mod kappa_relation;
 mod million_nodes;
 mod published_ub;
 mod radiation;
+mod settings_by_search;
 mod standards;
 mod symmetry;

@@ -13,7 +13,9 @@ mod stack;
 mod travel;
 
 pub use axis::{Axis, AxisName, AxisNameError, RESERVED_COLUMNS};
-pub use description::{Approach, AxisDescription, FormatVersion, Interval, Limits, MachineDescription, MachineProblem};
+pub use description::{
+    Approach, AxisDescription, FormatVersion, Inclined, Interval, Limits, MachineDescription, MachineProblem,
+};
 pub use library::{BUILT_IN_MACHINES, built_in_machine};
 pub(crate) use readings::readings_without_doubles;
 pub use setting::{MAX_AXES, Setting};

@@ -126,6 +126,10 @@ quantity!(
     AngleUncertainty, "°", "a standard uncertainty in degrees, above 0 and at most 45", |v| v > 0.0 && v <= 45.0
 );
 quantity!(
+    /// How far one direction leans from another, in degrees.
+    Inclination, "°", "an inclination in degrees, above 0 and below 180", |v| v > 0.0 && v < 180.0
+);
+quantity!(
     /// Half the opening of a cone, in degrees.
     ConeAngle, "°", "a half angle in degrees, from 0 and below 90", |v| (0.0..90.0).contains(&v)
 );

@@ -1,7 +1,7 @@
 use serde::{Deserialize, Serialize};
 
 use super::AxisName;
-use crate::quantity::{Component, ConeAngle, Degrees, Duration, Overshoot, Speed};
+use crate::quantity::{Component, ConeAngle, Degrees, Duration, Inclination, Overshoot, Speed};
 
 /// A machine as its file describes it. Every number has passed its own check; how they fit together is checked when an
 /// [`super::Instrument`] is made of it.
@@ -35,6 +35,10 @@ pub struct AxisDescription {
     pub name: AxisName,
     /// Direction in the lab frame with every axis at angle zero; any length but zero. Positive angles are right-handed.
     pub direction: (Component, Component, Component),
+    /// Where the axis leans away from that direction by a known angle, as a kappa axis does from omega: the direction is
+    /// then only where the axis would point without leaning.
+    #[serde(default, skip_serializing_if = "Option::is_none")]
+    pub inclined: Option<Inclined>,
     /// The readings it may take.
     pub limits: Limits,
     /// Speed.
@@ -54,6 +58,16 @@ pub struct AxisDescription {
     /// Set by hand before the night, never moved in a list.
     #[serde(default, skip_serializing_if = "std::ops::Not::not")]
     pub set_by_hand: bool,
+}
+
+/// How an axis leans: it lies in the plane of its `direction` and `towards`, on the side of `towards`.
+#[derive(Debug, Clone, Copy, PartialEq, Serialize, Deserialize)]
+#[serde(deny_unknown_fields)]
+pub struct Inclined {
+    /// The side to lean to, in the lab frame; any vector that is not parallel to the direction.
+    pub towards: (Component, Component, Component),
+    /// Angle from the direction to the axis.
+    pub by_deg: Inclination,
 }
 
 /// The readings an axis may take.

@@ -2,6 +2,7 @@ use nalgebra::{Rotation3, Unit, Vector3};
 
 use super::{Axis, AxisDescription, MAX_AXES, MachineDescription, MachineProblem, Setting, Travel};
 use crate::frames::{Head, Lab, Rotation, Vector};
+use crate::quantity::Component;
 
 /// A machine whose description has passed every check: two stacks of axes, the spindle among them, the forbidden cone.
 #[derive(Debug, Clone, PartialEq)]
@@ -119,12 +120,7 @@ fn check_axes(axes: &[AxisDescription], list: &str) -> Result<Vec<Axis>, Machine
 }
 
 fn check_axis(axis: &AxisDescription, path: &str) -> Result<Axis, MachineProblem> {
-    let (x, y, z) = axis.direction;
-    let Some(direction) = Unit::try_new(Vector3::new(x.get(), y.get(), z.get()), 1e-6) else {
-        let message =
-            format!("the direction of axis {} has no length; accepted is any vector but (0, 0, 0)", axis.name);
-        return Err(MachineProblem::new(format!("{path}.direction"), message));
-    };
+    let direction = direction_in_lab(axis, path)?;
     let travel = Travel::new(&axis.limits, axis.approach, &format!("{path}.limits"))?;
     let park = axis.park_deg.get();
     if travel.clearance_as_read_deg(park) < 0.0 {
@@ -147,6 +143,33 @@ fn check_axis(axis: &AxisDescription, path: &str) -> Result<Axis, MachineProblem
         approach: axis.approach,
         set_by_hand: axis.set_by_hand,
     })
+}
+
+/// Shorter directions and sideways parts than this say nothing about where they point.
+const NO_LENGTH: f64 = 1e-6;
+
+/// The unit vector of an axis in the lab frame, its inclination included.
+fn direction_in_lab(axis: &AxisDescription, path: &str) -> Result<Unit<Vector3<f64>>, MachineProblem> {
+    let vector = |(x, y, z): (Component, Component, Component)| Vector3::new(x.get(), y.get(), z.get());
+    let Some(straight) = Unit::try_new(vector(axis.direction), NO_LENGTH) else {
+        let message =
+            format!("the direction of axis {} has no length; accepted is any vector but (0, 0, 0)", axis.name);
+        return Err(MachineProblem::new(format!("{path}.direction"), message));
+    };
+    let Some(inclined) = axis.inclined else { return Ok(straight) };
+    let refused = |what: &str| {
+        let message = format!(
+            "axis {} is inclined towards a vector that {what}; accepted is any vector that is not parallel to its direction",
+            axis.name
+        );
+        MachineProblem::new(format!("{path}.inclined.towards"), message)
+    };
+    let towards =
+        Unit::try_new(vector(inclined.towards), NO_LENGTH).ok_or_else(|| refused("has no length"))?.into_inner();
+    let sideways = Unit::try_new(towards - straight.into_inner() * straight.dot(&towards), NO_LENGTH)
+        .ok_or_else(|| refused("is parallel to its direction"))?;
+    let (sin, cos) = inclined.by_deg.get().to_radians().sin_cos();
+    Ok(Unit::new_normalize(straight.into_inner() * cos + sideways.into_inner() * sin))
 }
 
 fn check_names(axes: &[Axis], sample_count: usize) -> Result<(), MachineProblem> {
@@ -187,66 +210,4 @@ fn find_spindle(description: &MachineDescription, sample: &[Axis]) -> Result<usi
 
 #[cfg(test)]
 #[allow(clippy::unwrap_used)]
-mod tests {
-    use super::super::{BUILT_IN_MACHINES, built_in_machine};
-    use super::*;
-
-    fn turned(machine: &str, axis: &str, head: [f64; 3]) -> Vector3<f64> {
-        let instrument = built_in_machine(machine).unwrap();
-        let mut readings = vec![0.0; instrument.axis_count()];
-        readings[instrument.axis_index(axis).unwrap()] = 10.0;
-        let [x, y, z] = head;
-        *(instrument.lab_from_head(&Setting::new(&readings)) * Vector::new(x, y, z)).raw()
-    }
-
-    /// Signs pinned on basis vectors: +10° moves a named vector to a named side.
-    #[test]
-    fn positive_angles_turn_the_crystal_the_right_handed_way() {
-        for machine in ["eulerian-four-circle", "kappa-four-circle", "fixed-chi-three-circle"] {
-            let v = turned(machine, "omega", [0.0, 0.0, 1.0]);
-            assert!(v.x > 0.17, "{machine}: omega takes downstream to the left");
-        }
-        assert!(turned("eulerian-four-circle", "phi", [0.0, 0.0, 1.0]).x > 0.17, "phi takes downstream to the left");
-        assert!(turned("kappa-four-circle", "phi", [0.0, 0.0, 1.0]).x > 0.17, "phi takes downstream to the left");
-        assert!(turned("eulerian-four-circle", "chi", [1.0, 0.0, 0.0]).y > 0.17, "chi takes left to up");
-        assert!(
-            turned("kappa-four-circle", "kappa", [1.0, 0.0, 0.0]).y > 0.13,
-            "kappa takes left to up, sin 50° of it"
-        );
-        assert!(turned("fixed-chi-three-circle", "phi", [0.0, 0.0, 1.0]).x > 0.09, "the tilted phi: left, cos χ of it");
-    }
-
-    #[test]
-    fn a_positive_detector_angle_swings_the_detector_to_the_left() {
-        for (machine, _) in BUILT_IN_MACHINES {
-            let instrument = built_in_machine(machine).unwrap();
-            let mut readings = vec![0.0; instrument.axis_count()];
-            *readings.last_mut().unwrap() = 10.0;
-            let setting = Setting::new(&readings);
-            assert!(instrument.diffracted_direction(&setting).raw().x > 0.17);
-            assert!((instrument.two_theta_rad(&setting).to_degrees() - 10.0).abs() < 1e-12);
-            let q = instrument.q_in_lab(&setting, 0.5);
-            assert!((q.norm() - 2.0 * 5f64.to_radians().sin() / 0.5).abs() < 1e-12, "|Q| = 2 sin θ / λ");
-        }
-    }
-
-    fn refused(change: impl Fn(&mut MachineDescription)) -> MachineProblem {
-        let mut description: MachineDescription = ron::from_str(BUILT_IN_MACHINES[0].1).unwrap();
-        change(&mut description);
-        Instrument::new(description).unwrap_err()
-    }
-
-    #[test]
-    fn misfits_are_refused_with_their_place() {
-        let double = refused(|d| d.detector_axes[0].name = d.sample_axes[0].name.clone());
-        assert_eq!(double.path, "detector_axes[0].name");
-        let zero = crate::quantity::Component::new(0.0).unwrap();
-        assert_eq!(refused(|d| d.sample_axes[1].direction = (zero, zero, zero)).path, "sample_axes[1].direction");
-        assert_eq!(refused(|d| d.sample_axes.clear()).path, "sample_axes");
-        let far = crate::quantity::Degrees::new(999.0).unwrap();
-        assert_eq!(refused(|d| d.sample_axes[0].park_deg = far).path, "sample_axes[0].park_deg");
-        let name = super::super::AxisName::new("two_theta").unwrap();
-        assert_eq!(refused(|d| d.spindle = Some(name.clone())).path, "spindle");
-        assert_eq!(refused(|d| d.sample_axes[2].set_by_hand = true).path, "spindle");
-    }
-}
+mod tests;

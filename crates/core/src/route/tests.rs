@@ -29,6 +29,12 @@ fn changed(machine: &str, changes: &[(&str, &str)]) -> Instrument {
     Instrument::new(ron::from_str::<MachineDescription>(&text).unwrap()).unwrap()
 }
 
+/// Built-in machines whose settings need no other rule than *bisecting*.
+fn one_detector_axis() -> impl Iterator<Item = &'static str> {
+    let names = BUILT_IN_MACHINES.iter().map(|(name, _)| *name);
+    names.filter(|name| built_in_machine(name).unwrap().detector_axes().len() == 1)
+}
+
 fn some_ub() -> Matrix3<f64> {
     let cell = UnitCell::new(7.1, 8.3, 10.2, 90.0, 101.0, 90.0).unwrap();
     let u = Rotation3::from_axis_angle(&nalgebra::Unit::new_normalize(Vector3::new(0.3, -0.8, 0.5)), 1.2);
@@ -74,7 +80,7 @@ fn as_given(list: &DriveList, fingerprint: Option<Fingerprint>) -> GivenList {
 
 #[test]
 fn every_plan_passes_and_adds_up() {
-    for (name, _) in BUILT_IN_MACHINES {
+    for name in one_detector_axis() {
         let (machine, ub) = (built_in_machine(name).unwrap(), some_ub());
         let wanted = candidates(&machine, &ub, 3);
         assert!(wanted.len() > 50, "{name}");

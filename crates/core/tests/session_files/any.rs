@@ -8,10 +8,12 @@ use proptest::option::of;
 use proptest::prelude::*;
 use ringwright_core::aim::{Preference, Rule};
 use ringwright_core::crystal::{Centring, SymmetryQuery};
-use ringwright_core::instrument::{Approach, AxisDescription, AxisName, Interval, Limits, MachineDescription};
+use ringwright_core::instrument::{
+    Approach, AxisDescription, AxisName, Inclined, Interval, Limits, MachineDescription,
+};
 use ringwright_core::quantity::{
-    AngleUncertainty, CellAngle, Component, ConeAngle, Degrees, Duration, EnergyInKev, EnergyInMev, Index, Length,
-    Overshoot, Speed, WavelengthInAngstrom,
+    AngleUncertainty, CellAngle, Component, ConeAngle, Degrees, Duration, EnergyInKev, EnergyInMev, Inclination, Index,
+    Length, Overshoot, Speed, WavelengthInAngstrom,
 };
 use ringwright_core::radiation::{Radiation, emission_lines};
 use ringwright_core::session::{
@@ -120,13 +122,19 @@ fn approach() -> impl Strategy<Value = Approach> {
     })
 }
 
+fn inclined() -> impl Strategy<Value = Inclined> {
+    let towards = (component(), component(), component());
+    (towards, quantity::<Inclination>(0.0, 180.0)).prop_map(|(towards, by_deg)| Inclined { towards, by_deg })
+}
+
 fn axis() -> impl Strategy<Value = AxisDescription> {
     let times = (quantity::<Speed>(0.0, 1000.0), quantity::<Duration>(0.0, 1e7));
-    let direction = (component(), component(), component());
+    let direction = ((component(), component(), component()), of(inclined()));
     let rest = (degrees(), degrees(), of(approach()), any::<bool>());
     (axis_name(), direction, limits(), times, rest).prop_map(|(name, direction, limits, times, rest)| AxisDescription {
         name,
-        direction,
+        direction: direction.0,
+        inclined: direction.1,
         limits,
         speed_deg_per_s: times.0,
         overhead_s: times.1,

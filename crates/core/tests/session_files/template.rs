@@ -12,7 +12,9 @@ pub const MACHINE: &str = r#"(
             speed_deg_per_s: ⟦sample_axes[0].speed_deg_per_s|4⟧, overhead_s: ⟦sample_axes[0].overhead_s|0.5⟧,
             zero_offset_deg: ⟦sample_axes[0].zero_offset_deg|0.02⟧, park_deg: ⟦sample_axes[0].park_deg|5⟧)⟧,
         (
-            name: "chi", /* tilts ( the crystal */ direction: (0, 0, 1), limits: Endless, speed_deg_per_s: 3,
+            name: "chi", /* tilts ( the crystal */ direction: (0, 1, 0),
+            inclined: ⟦sample_axes[1].inclined|(towards: ⟦sample_axes[1].inclined.towards|(⟦sample_axes[1].inclined.towards[0]|0⟧, ⟦sample_axes[1].inclined.towards[1]|0⟧, ⟦sample_axes[1].inclined.towards[2]|1⟧)⟧, by_deg: ⟦sample_axes[1].inclined.by_deg|90⟧)⟧,
+            limits: Endless, speed_deg_per_s: 3,
             approach: ⟦sample_axes[1].approach|Upward(overshoot_deg: ⟦sample_axes[1].approach.Upward.overshoot_deg|0.5⟧)⟧,
         ),
         (name: "tilt", direction: (1, 0, 0), limits: Intervals([(from_deg: -20, to_deg: 20)]), speed_deg_per_s: 1, set_by_hand: ⟦sample_axes[2].set_by_hand|true⟧),

@@ -1,0 +1,117 @@
+//! Every setting of random cases, against a search that knows no closed form.
+//!
+//! Source: `reference/settings_by_search.ron`, *computed* by `scripts/settings_by_search.py` (numpy, scipy): damped
+//! Gauss-Newton from thousands of random starts on the full system of equations in the angles of all axes, written from
+//! the definitions alone. The script says when a case counts as searched through, and which draws it replaces.
+
+use std::collections::{BTreeMap, BTreeSet};
+use std::path::Path;
+
+use nalgebra::{Matrix3, Vector3};
+use ringwright_acceptance::{all_settings, turn_between_deg};
+use ringwright_core::aim::{Rule, Solver};
+use ringwright_core::frames::{Head, Vector};
+use ringwright_core::instrument::{AxisName, BUILT_IN_MACHINES, Instrument, Limits, Setting, built_in_machine};
+use ringwright_core::quantity::Degrees;
+use ron::value::RawValue;
+use serde::Deserialize;
+
+/// Readings stand in the file with ten decimals, and search and solver each solve to about 1e-12.
+const ANGLE_TOL_DEG: f64 = 1e-6;
+
+#[derive(Debug, Deserialize)]
+#[serde(deny_unknown_fields)]
+struct Case {
+    machine: String,
+    by_hand_deg: BTreeMap<AxisName, Degrees>,
+    /// As in a session.
+    rules: Box<RawValue>,
+    /// As in a session.
+    #[serde(rename = "surface")]
+    _surface: Box<RawValue>,
+    /// Row by row, Å⁻¹, columns a*, b*, c* in the head frame.
+    ub: [[f64; 3]; 3],
+    hkl: [f64; 3],
+    wavelength_angstrom: f64,
+    /// Readings of all axes, in the order of the machine's file.
+    settings_deg: Vec<Vec<f64>>,
+}
+
+impl Case {
+    /// The machine without limits, its tilt arcs where the case has them.
+    fn instrument(&self) -> Instrument {
+        let mut description = built_in_machine(&self.machine).unwrap().description().clone();
+        for axis in description.sample_axes.iter_mut().chain(&mut description.detector_axes) {
+            axis.limits = Limits::Endless;
+            if let Some(at) = self.by_hand_deg.get(&axis.name) {
+                assert!(axis.set_by_hand);
+                axis.park_deg = *at;
+            }
+        }
+        Instrument::new(description).unwrap()
+    }
+
+    fn node_in_head(&self) -> Vector<Head> {
+        let ub = Matrix3::from_row_iterator(self.ub.into_iter().flatten());
+        Vector::from_raw(ub * Vector3::from(self.hkl))
+    }
+}
+
+fn cases() -> Vec<Case> {
+    let path = Path::new(env!("CARGO_MANIFEST_DIR")).join("reference/settings_by_search.ron");
+    let cases: Vec<Case> = ron::from_str(&std::fs::read_to_string(path).unwrap()).unwrap();
+    assert!(cases.len() >= 200, "{} cases", cases.len());
+    cases
+}
+
+/// The script read the same machine files: what it found diffracts on the machines as the program knows them.
+#[test]
+fn what_the_search_found_diffracts() {
+    let cases = cases();
+    for (i, case) in cases.iter().enumerate() {
+        let (instrument, node) = (case.instrument(), case.node_in_head());
+        for readings in &case.settings_deg {
+            assert_eq!(readings.len(), instrument.axis_count());
+            let setting = Setting::new(readings);
+            let q = instrument.q_in_lab(&setting, case.wavelength_angstrom);
+            let off = (instrument.lab_from_head(&setting) * node - q).norm() / node.norm();
+            assert!(off < 1e-10, "case {i}, {readings:?}: off by {off} |Q|");
+            for (axis, reading) in instrument.axes().zip(readings).filter(|(axis, _)| axis.set_by_hand) {
+                assert_eq!(axis.park_deg, *reading);
+            }
+        }
+    }
+    let machines: BTreeSet<&str> = cases.iter().map(|case| case.machine.as_str()).collect();
+    assert_eq!(machines, BUILT_IN_MACHINES.iter().map(|(name, _)| *name).collect());
+}
+
+/// What differs between the solver's settings and the search's, in words; nothing if they are the same.
+fn difference(case: &Case, solver: &Solver) -> Option<String> {
+    let found = all_settings(solver, case.node_in_head(), case.wavelength_angstrom);
+    if found.len() != case.settings_deg.len() {
+        return Some(format!("{} settings, the search has {}", found.len(), case.settings_deg.len()));
+    }
+    let apart = |setting: &Setting, readings: &[f64]| {
+        let pairs = setting.readings_deg().iter().zip(readings);
+        pairs.map(|(a, b)| turn_between_deg(*a, *b).abs()).fold(0.0, f64::max)
+    };
+    let nearest = |readings: &Vec<f64>| found.iter().map(|s| apart(s, readings)).fold(f64::INFINITY, f64::min);
+    let worst = case.settings_deg.iter().map(nearest).fold(0.0, f64::max);
+    (worst > ANGLE_TOL_DEG).then(|| format!("a setting of the search is {worst}° from the nearest"))
+}
+
+/// Of the rules, those that have a solver.
+#[test]
+fn the_solver_finds_the_same_settings() {
+    let (mut compared, mut failures) = (0, Vec::new());
+    for (i, case) in cases().iter().enumerate() {
+        let Ok(rules) = ron::from_str::<Vec<Rule>>(case.rules.get_ron()) else { continue };
+        let Ok(solver) = Solver::new(&case.instrument(), &rules) else { continue };
+        compared += 1;
+        if let Some(difference) = difference(case, &solver) {
+            failures.push(format!("case {i}, {} {}: {difference}", case.machine, case.rules.get_ron()));
+        }
+    }
+    assert!(failures.is_empty(), "{}", failures.join("\n"));
+    assert!(compared >= 26, "{compared} cases compared");
+}
