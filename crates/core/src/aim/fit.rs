@@ -234,21 +234,9 @@ impl Check<'_> {
             let message = format!("{name} is the only detector axis, which 2θ settles; accepted is one of {accepted}");
             return Err((field, message));
         }
-        let settled = |rule: &&Rule| match rule {
-            Rule::Hold { axis, .. } | Rule::Tie { axis, .. } => axis == name,
-            _ => false,
-        };
-        if let Some(other) = self.earlier.iter().find(settled) {
-            let message = match other {
-                Rule::Hold { .. } if verb == "held" => {
-                    format!("{name} is held by two rules; accepted is one rule for each axis")
-                }
-                other => format!(
-                    "{name} is {verb}, but another rule ({}) settles it; accepted is one rule for each axis",
-                    other.word()
-                ),
-            };
-            return Err((field, message));
+        let held = |rule: &Rule| matches!(rule, Rule::Hold { axis, .. } if axis == name);
+        if verb == "held" && self.earlier.iter().any(held) {
+            return Err((field, format!("{name} is held by two rules; accepted is one rule for each axis")));
         }
         Ok(axis)
     }
@@ -288,13 +276,6 @@ impl Check<'_> {
                 "Tie.axis",
                 format!("{name} is a detector axis; accepted is {to} tied to {name}, or two detector axes"),
             ));
-        }
-        let follows_back = self
-            .earlier
-            .iter()
-            .any(|rule| matches!(rule, Rule::Tie { axis, to: back, .. } if axis == to && back == name));
-        if follows_back {
-            return Err(("Tie.to", format!("{to} follows {name} already; accepted is one tie for a pair of axes")));
         }
         if factor == 0.0 {
             return Err(("Tie.factor", "0 ties nothing; accepted is another number, or the rule Hold".to_owned()));

@@ -167,7 +167,14 @@ impl General {
             return self.each_way(links, goal, query, &mut |way, query| found(links, way, template, query));
         };
         let Some(&slot) = links.slots().get(link) else { return Ok(()) };
-        for angle in leaf::settled_angles(links, link, &query.carried, goal) {
+        let angles = match leaf::settled_angles(links, link, &query.carried, goal) {
+            Ok(angles) => angles,
+            Err(miss) => {
+                (0..2).for_each(|_| found(links, Err(miss), template, query));
+                return Ok(());
+            }
+        };
+        for angle in angles {
             let inside = links.hold(link, angle);
             let mut template = template;
             template[slot] = angle.to_degrees() + self.zero_deg[slot];
@@ -308,14 +315,7 @@ impl Search<'_> {
     }
 
     fn each(&self, found: &mut dyn FnMut(Way)) -> f64 {
-        let range = match self.along {
-            Along::Tied(_) => {
-                let half =
-                    self.road.ties.iter().map(|tie| tie.multiple.turns()).product::<f64>() * std::f64::consts::PI;
-                (-half, half)
-            }
-            Along::Axis(_) | Along::Beam => (-std::f64::consts::PI, std::f64::consts::PI),
-        };
+        let range = (-std::f64::consts::PI, std::f64::consts::PI);
         let mut look = |u: f64| self.look(u);
         let nearest = scan::roots(range, &mut look, &mut |u, branch| {
             if let Some(way) = self.ways_at(u)[branch].and_then(Result::ok) {
@@ -354,9 +354,13 @@ impl Search<'_> {
                 take(&ways, &|way| way.with(link, u));
             }
             Along::Tied(root) => {
-                let held = self.tied_angles(root, u);
-                let inside = held.iter().rev().fold(self.links.clone(), |l, &(link, angle)| l.hold(link, angle));
-                take(&self.solve(&inside), &|way| held.iter().fold(way, |w, &(link, angle)| w.with(link, angle)));
+                self.each_tied(&self.road.ties, &mut vec![(root, u)], &mut |angles| {
+                    let mut held: Vec<HeldLink> =
+                        angles.iter().filter_map(|&(axis, angle)| Some((self.links.place_of(axis)?, angle))).collect();
+                    held.sort_by_key(|&(link, _)| link);
+                    let inside = held.iter().rev().fold(self.links.clone(), |l, &(link, angle)| l.hold(link, angle));
+                    take(&self.solve(&inside), &|way| held.iter().fold(way, |w, &(link, angle)| w.with(link, angle)));
+                });
             }
             Along::Beam => {
                 let Arm::Follows(axes) = &self.road.arm else { return all };
@@ -383,17 +387,15 @@ impl Search<'_> {
         all
     }
 
-    /// The links that hang on an axis at an angle, and itself, outermost first.
-    fn tied_angles(&self, root: usize, u: f64) -> Vec<(usize, f64)> {
-        let mut angles: Vec<(usize, f64)> = vec![(root, u)];
-        for tie in &self.road.ties {
-            let other = angles.iter().find(|(axis, _)| *axis == tie.to).map_or(u, |&(_, angle)| angle);
-            angles.push((tie.axis, tie.multiple.of(other)));
+    /// The axes that hang on one at an angle, and their angles, in every turn that fractions allow.
+    fn each_tied(&self, ties: &[Tie], angles: &mut Vec<HeldLink>, then: &mut dyn FnMut(&[HeldLink])) {
+        let Some((tie, rest)) = ties.split_first() else { return then(angles) };
+        let other = angles.iter().find(|(axis, _)| *axis == tie.to).map_or(0.0, |&(_, angle)| angle);
+        for angle in tie.multiple.each_turn(other) {
+            angles.push((tie.axis, angle));
+            self.each_tied(rest, angles, then);
+            angles.pop();
         }
-        let mut held: Vec<(usize, f64)> =
-            angles.into_iter().filter_map(|(axis, angle)| Some((self.links.place_of(axis)?, angle))).collect();
-        held.sort_by_key(|&(link, _)| link);
-        held
     }
 
     /// The links that hang on a place of the detector and their angles, outermost first, in every turn that fractions allow.
@@ -438,7 +440,10 @@ impl Search<'_> {
     fn folded(&self, u: f64, way: &Way) -> Option<Links> {
         let mut held: Vec<usize> = match self.along {
             Along::Axis(link) => return Some(self.links.hold(link, u)),
-            Along::Tied(root) => self.tied_angles(root, u).into_iter().map(|(link, _)| link).collect(),
+            Along::Tied(root) => {
+                let tied = self.road.ties.iter().map(|tie| tie.axis).chain([root]);
+                tied.filter_map(|axis| self.links.place_of(axis)).collect()
+            }
             Along::Beam => {
                 self.road.beam_ties.iter().filter_map(|tie| self.links.place_of(tie.axis)).chain([0]).collect()
             }

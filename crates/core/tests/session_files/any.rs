@@ -6,7 +6,7 @@ use std::fmt::Debug;
 use proptest::collection::{btree_map, vec};
 use proptest::option::of;
 use proptest::prelude::*;
-use ringwright_core::aim::{Preference, Rule};
+use ringwright_core::aim::{Preference, Reference, Rule};
 use ringwright_core::crystal::{Centring, SymmetryQuery};
 use ringwright_core::instrument::{
     Approach, AxisDescription, AxisName, Inclined, Interval, Limits, MachineDescription,
@@ -175,7 +175,30 @@ fn peak() -> impl Strategy<Value = PeakDocument> {
 }
 
 fn rule() -> impl Strategy<Value = Rule> {
-    prop_oneof![Just(Rule::Bisecting), (axis_name(), degrees()).prop_map(|(axis, at_deg)| Rule::Hold { axis, at_deg })]
+    prop_oneof![
+        Just(Rule::Bisecting),
+        Just(Rule::EqualIncidenceAndExit),
+        axis_name().prop_map(|axis| Rule::BisectingAbout { axis }),
+        (axis_name(), degrees()).prop_map(|(axis, at_deg)| Rule::Hold { axis, at_deg }),
+        (reference(), degrees()).prop_map(|(reference, at_deg)| Rule::Azimuth { reference, at_deg }),
+        degrees().prop_map(|at_deg| Rule::Incidence { at_deg }),
+        degrees().prop_map(|at_deg| Rule::Exit { at_deg }),
+        (axis_name(), axis_name(), component(), degrees()).prop_map(|(axis, to, factor, offset_deg)| Rule::Tie {
+            axis,
+            to,
+            factor,
+            offset_deg
+        }),
+        degrees().prop_map(|turned_deg| Rule::DiffractionPlane { turned_deg }),
+        (reference(), of(degrees())).prop_map(|(reference, keep_clear_deg)| Rule::Freest { reference, keep_clear_deg }),
+    ]
+}
+
+fn reference() -> impl Strategy<Value = Reference> {
+    prop_oneof![
+        (index(), index(), index()).prop_map(|(h, k, l)| Reference::Reciprocal { h, k, l }),
+        (index(), index(), index()).prop_map(|(u, v, w)| Reference::Direct { u, v, w }),
+    ]
 }
 
 fn preference() -> impl Strategy<Value = Preference> {
@@ -203,8 +226,8 @@ fn orientation() -> impl Strategy<Value = OrientationDocument> {
 }
 
 pub fn session() -> impl Strategy<Value = Session> {
-    let crystal = (text(), cell(), symmetry());
-    let crystal = crystal.prop_map(|(name, cell, symmetry)| CrystalDocument { name, cell, symmetry });
+    let crystal = (text(), cell(), symmetry(), of(reference()));
+    let crystal = crystal.prop_map(|(name, cell, symmetry, surface)| CrystalDocument { name, cell, symmetry, surface });
     let wishes = (vec(rule(), 0..4), preference(), targets(), of(orientation()));
     (text(), crystal, radiation(), machine(), vec(peak(), 0..5), wishes).prop_map(
         |(title, crystal, radiation, machine, peaks, (rules, preference, targets, orientation))| Session {

@@ -89,7 +89,7 @@ fn rules(ui: &mut Ui, bench: &mut Bench<'_>) {
 }
 
 fn rule_kind(ui: &mut Ui, rule: &mut Rule, machine: Option<&Instrument>, i: usize) {
-    let text = match rule {
+    let text = match &*rule {
         Rule::Bisecting => "bisecting".to_owned(),
         Rule::Hold { axis, .. } => format!("hold {axis}"),
         other => words(other),

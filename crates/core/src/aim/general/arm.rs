@@ -64,6 +64,11 @@ impl Multiple {
         self.factor * other_rad + self.offset_rad
     }
 
+    /// The same seen from the other axis.
+    pub fn inverse(self) -> Self {
+        Self { factor: 1.0 / self.factor, offset_rad: -self.offset_rad / self.factor }
+    }
+
     /// Every place of the tied axis for an angle of the other that is known up to full turns.
     pub fn each_turn(self, other_rad: f64) -> impl Iterator<Item = f64> {
         let turns = self.turns() as u32;

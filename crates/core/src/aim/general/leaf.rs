@@ -9,12 +9,14 @@ use crate::aim::pair::Pair;
 use crate::frames::HalfAngle;
 use crate::frames::subproblem::{Dial, opening, turn};
 
-/// The most ways that a closed form gives, or a step of a search: two places of a tied detector, two turns of the tie, two
-/// azimuths, two openings.
-pub const MAX_WAYS: usize = 16;
+/// The most ways at a step of a search: two places of a tied detector, up to four turns of each tie, two azimuths, two
+/// openings.
+pub const MAX_WAYS: usize = 64;
 
 /// Below this sine a direction counts as lying along an axis.
 const ALONG_AXIS: f64 = 1e-9;
+
+const RIGHT_ANGLE: HalfAngle = HalfAngle { sin: std::f64::consts::FRAC_1_SQRT_2, cos: std::f64::consts::FRAC_1_SQRT_2 };
 
 /// What is left to solve.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -205,19 +207,27 @@ fn bisecting(axes: [Vector3<f64>; 3], reference: &Vector3<f64>, q: &Vector3<f64>
     }
 }
 
-/// Where nothing but the axis at one end of the chain counts for *bisecting*: the two angles at which Q, seen from the far
-/// side of that axis, lies in the plane of spindle and reference axis, whatever the others do.
-pub fn settled_angles(links: &Links, link: usize, carried: &Carried, goal: &Goal) -> [f64; 2] {
-    let Some(&own) = links.directions().get(link) else { return [0.0; 2] };
-    let other = if link == 0 { links.spindle.direction } else { links.reference.direction };
-    let about = Dial::new(own, &other);
-    [1.0, -1.0].map(|side| {
-        if link == 0 {
-            turn(about.across(&other), about.across(&(goal.q * side)))
-        } else {
-            turn(about.across(&(links.held * carried.q)), about.across(&(other * side)))
-        }
-    })
+/// Where nothing but the axis at one end of the chain counts for *bisecting*: the two angles in radians at which spindle,
+/// reference axis and Q lie in one plane, whatever the others do.
+///
+/// # Errors
+/// By how many radians the axis misses.
+pub fn settled_angles(links: &Links, link: usize, carried: &Carried, goal: &Goal) -> Result<[f64; 2], f64> {
+    let Some(&own) = links.directions().get(link) else { return Err(0.0) };
+    // The axis turns one direction until it is perpendicular to another that stands still.
+    let (turned, still) = if link == 0 {
+        (links.spindle.direction, goal.q.cross(&links.reference.direction))
+    } else {
+        (links.spindle.direction.cross(&(links.held * carried.q)), links.reference.direction)
+    };
+    if turned.norm() < ALONG_AXIS || still.norm() < ALONG_AXIS {
+        return Ok([0.0; 2]);
+    }
+    let (turned, still) = (turned.normalize(), still.normalize());
+    let about = Dial::new(own, &still);
+    let open = opening(HalfAngle::between(&own, &still), HalfAngle::between(&own, &turned), RIGHT_ANGLE);
+    let centre = turn(about.across(&turned), about.across(&still));
+    open.map(|open| [centre + open.angle(), centre - open.angle()]).map_err(|miss| miss.by_rad)
 }
 
 /// Both ways to make a rotation with three axes.
@@ -258,8 +268,7 @@ fn turned_bisecting(links: &Links, wanted: &Matrix3<f64>, goal: &Goal, ways: &mu
         Ok([0.0, 0.0])
     } else {
         let normal = normal.normalize();
-        let right_angle = HalfAngle { sin: std::f64::consts::FRAC_1_SQRT_2, cos: std::f64::consts::FRAC_1_SQRT_2 };
-        opening(HalfAngle::between(&a, &normal), HalfAngle::between(&a, carried), right_angle).map(|open| {
+        opening(HalfAngle::between(&a, &normal), HalfAngle::between(&a, carried), RIGHT_ANGLE).map(|open| {
             let centre = turn(about.across(carried), about.across(&normal));
             [centre + open.angle(), centre - open.angle()]
         })
@@ -295,8 +304,7 @@ fn turned_bisecting_third(links: &Links, wanted: &Matrix3<f64>, goal: &Goal, way
     let normal = normal.normalize();
     // In the plane: its direction nearest to the innermost axis, turned to either side of it.
     let about = Dial::new(normal, &d_there);
-    let right_angle = HalfAngle { sin: std::f64::consts::FRAC_1_SQRT_2, cos: std::f64::consts::FRAC_1_SQRT_2 };
-    match opening(HalfAngle::between(&d_there, &normal), right_angle, HalfAngle::between(&d, &c)) {
+    match opening(HalfAngle::between(&d_there, &normal), RIGHT_ANGLE, HalfAngle::between(&d, &c)) {
         Err(miss) => ways.push_misses(4, miss.by_rad),
         Ok(open) => {
             for side in [1.0, -1.0] {

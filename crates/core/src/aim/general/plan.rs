@@ -16,6 +16,13 @@ pub struct Tie {
     pub multiple: Multiple,
 }
 
+impl Tie {
+    /// The same tie seen from the axis that follows.
+    pub fn inverse(self) -> Self {
+        Self { axis: self.to, to: self.axis, multiple: self.multiple.inverse() }
+    }
+}
+
 /// How the sample axes are found.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub enum Plan {
@@ -157,18 +164,18 @@ fn fixed_spindle(links: &Links) -> bool {
     links.carried_by_crystal(&links.spindle)
 }
 
-/// The moving axis that *bisecting* settles by itself, if there is one that is free: the innermost, if it is the spindle
-/// and the reference stands still against what carries it; or the outermost, if it is the reference axis and alone carries
-/// the spindle.
+/// The moving axis that *bisecting* settles by itself, if there is one that is free. Whatever turns spindle, reference axis
+/// and Q together changes nothing, so it is the innermost if that alone lies inside the reference axis, or the outermost if
+/// that alone lies outside the spindle and the reference axis stands still.
 pub fn settled_by_bisecting(links: &Links, is_free: impl Fn(usize) -> bool) -> Option<usize> {
     let (spindle, reference) = (&links.spindle, &links.reference);
     let last = links.directions().len().checked_sub(1)?;
     let free = |link: usize| links.slots().get(link).is_some_and(|&slot| is_free(slot));
-    let beside = reference.position == last || (reference.position + 1 == last && moves(links, reference));
-    if spindle.position == last && moves(links, spindle) && beside && free(last) {
+    let outside = reference.position + usize::from(moves(links, reference));
+    if outside == last && links.carried_by_crystal(spindle) && free(last) {
         return Some(last);
     }
-    (reference.position == 0 && moves(links, reference) && spindle.position == 1 && free(0)).then_some(0)
+    (reference.position == 0 && spindle.position == 1 && free(0)).then_some(0)
 }
 
 /// The axis whose being held leaves the two most perpendicular to each other.

@@ -47,9 +47,9 @@ impl General {
         }
         let (twist, direction) = twist(rules, crystal)?;
         let known = |axis: usize| held.contains(&axis) || (axis >= sample_count && !follows);
-        let (known_ties, open_ties) = sort_ties(ties, known);
+        let (known_ties, open_ties) = sort_ties(ties, known)?;
         let (beam_ties, sample_ties): (Vec<Tie>, Vec<Tie>) = open_ties.iter().partition(|tie| tie.to >= sample_count);
-        let (ties, more_ties) = largest_group(&sample_ties);
+        let (ties, more_ties) = largest_group(&sample_ties)?;
         // What hangs on a known axis is held as soon as that is placed: for the road, any angle will do.
         let then = known_ties.iter().fold(links.clone(), |links, tie| match links.place_of(tie.axis) {
             Some(link) => links.hold(link, 0.4),
@@ -112,21 +112,40 @@ fn ties(instrument: &Instrument, rules: &[Rule]) -> Vec<Tie> {
     rules.iter().filter_map(tie).filter(|tie| tie.axis < instrument.sample_axes().len()).collect()
 }
 
-/// Ties to known axes in the order in which they can be kept, and the others.
-fn sort_ties(mut open: Vec<Tie>, known: impl Fn(usize) -> bool) -> (Vec<Tie>, Vec<Tie>) {
+/// Ties with one known end, seen from that end and in the order in which they can be kept, and the others.
+///
+/// # Errors
+/// If a tie has two known ends.
+fn sort_ties(mut open: Vec<Tie>, known: impl Fn(usize) -> bool) -> Result<(Vec<Tie>, Vec<Tie>), RuleError> {
     let mut settled: Vec<Tie> = Vec::new();
-    while let Some(next) = open.iter().position(|tie| known(tie.to) || settled.iter().any(|other| other.axis == tie.to))
-    {
-        settled.push(open.remove(next));
+    let is_known = |axis: usize, settled: &[Tie]| known(axis) || settled.iter().any(|other| other.axis == axis);
+    while let Some(next) = open.iter().position(|tie| is_known(tie.to, &settled) || is_known(tie.axis, &settled)) {
+        let tie = open.remove(next);
+        match (is_known(tie.axis, &settled), is_known(tie.to, &settled)) {
+            (true, true) => {
+                return Err(RuleError::SameFreedom {
+                    first: "a tie".to_owned(),
+                    second: "what settles both of its axes".to_owned(),
+                    freedom: "the angle of an axis",
+                });
+            }
+            (true, false) => settled.push(tie.inverse()),
+            _ => settled.push(tie),
+        }
     }
-    (settled, open)
+    Ok((settled, open))
 }
 
-/// The most ties that hang on one axis, in the order in which they can be kept, and the others.
-fn largest_group(ties: &[Tie]) -> (Vec<Tie>, Vec<Tie>) {
-    let roots = ties.iter().map(|tie| tie.to).filter(|&to| ties.iter().all(|other| other.axis != to));
-    let groups = roots.map(|root| sort_ties(ties.to_vec(), |axis| axis == root));
-    groups.max_by_key(|(group, _)| group.len()).unwrap_or_default()
+/// The most ties that hang together, seen from one axis, and the others.
+fn largest_group(ties: &[Tie]) -> Result<(Vec<Tie>, Vec<Tie>), RuleError> {
+    let mut best = (Vec::new(), ties.to_vec());
+    for root in ties.iter().map(|tie| tie.to) {
+        let group = sort_ties(ties.to_vec(), |axis| axis == root)?;
+        if group.0.len() > best.0.len() {
+            best = group;
+        }
+    }
+    Ok(best)
 }
 
 fn arm(
