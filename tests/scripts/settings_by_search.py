@@ -4,8 +4,9 @@ A case is a machine, rules that settle its spare angles, UB, hkl and a wavelengt
 that move, the equations R U B h = Q and one smooth equation for each rule, written from the definitions alone (core's
 `conventions`), without any closed form for angles. From random starts (uniform on every axis) a damped Gauss-Newton
 iteration (Levenberg 1944, Marquardt 1963) runs to a root, or to a minimum that is none and is dropped. Starts are doubled
-until two rounds in a row find nothing new and every solution has been met at least MIN_HITS times. Solutions are polished
-by scipy.optimize.root and counted modulo 360 degrees. There are no limits, and all zero offsets are 0.
+until two rounds in a row find nothing new (four, where nothing is found at all) and every solution has been met at least
+MIN_HITS times. Solutions are polished by scipy.optimize.root and counted modulo 360 degrees. There are no limits, and all
+zero offsets are 0.
 
 Replaced by another draw are cases with a solution where the Jacobian is singular or nearly so (continua, double roots),
 and those with a minimum that all but touches zero: they are tested apart.
@@ -14,7 +15,7 @@ The numbers of most cases are read off a random setting, which the search must t
 independently, and some of those have no solution.
 
     python -m venv venv && venv/bin/pip install numpy==2.4.6 scipy==1.17.1
-    OPENBLAS_NUM_THREADS=1 venv/bin/python tests/scripts/settings_by_search.py       (about ten minutes on one core)
+    OPENBLAS_NUM_THREADS=1 venv/bin/python tests/scripts/settings_by_search.py       (8 to 13 minutes on one core)
 
 writes tests/reference/settings_by_search.ron: cases as RON, `rules` and `surface` as in a session, `ub` row by row in
 reciprocal angstrom with columns a*, b*, c* in the head frame, `by_hand_deg` where tilt arcs stand, and under `settings_deg`

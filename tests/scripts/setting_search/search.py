@@ -257,7 +257,8 @@ class Case:
         """Every solution in radians (many, N); None if the case is to be replaced."""
         known, hits, quiet, count = np.empty((0, len(self.free))), [], 0, FIRST_ROUND
         self.starts = 0
-        while quiet < 2 or min(hits, default=MIN_HITS) < MIN_HITS:
+        # Where nothing is found there are no hits to judge by: two more rounds, four times as many starts again.
+        while quiet < (2 if hits else 4) or min(hits, default=MIN_HITS) < MIN_HITS:
             if count > LAST_ROUND:
                 return None
             new, self.starts = 0, self.starts + count
