@@ -315,7 +315,9 @@ impl Search<'_> {
     }
 
     fn each(&self, found: &mut dyn FnMut(Way)) -> f64 {
-        let range = (-std::f64::consts::PI, std::f64::consts::PI);
+        // A little more than a turn: a root at its very end would lie between two turns of a tie.
+        let half = std::f64::consts::PI + 0.37 * scan::STEP_RAD;
+        let range = (-half, half);
         let mut look = |u: f64| self.look(u);
         let nearest = scan::roots(range, &mut look, &mut |u, branch| {
             if let Some(way) = self.ways_at(u)[branch].and_then(Result::ok) {

@@ -10,7 +10,8 @@ use crate::frames::subproblem::{Dial, opening, turn};
 #[derive(Debug, Clone, PartialEq)]
 pub enum Arm {
     /// One axis swings what it carries to the angle 2θ from the beam; another may stand still.
-    Swing(Swing),
+    /// Several entries if the other may stand in several places.
+    Swing(Vec<Swing>),
     /// Two axes; k_f lies in a plane through the beam that is turned by this many radians about it.
     Plane {
         /// Both axes.
@@ -92,7 +93,7 @@ impl Multiple {
     /// Where to look for the other angle.
     pub fn range(self) -> (f64, f64) {
         let half = std::f64::consts::PI * self.turns();
-        (-half, half)
+        (-half - 0.37 * scan::STEP_RAD, half + 0.37 * scan::STEP_RAD)
     }
 }
 
@@ -110,7 +111,7 @@ impl Arm {
     pub fn each_place(&self, theta: HalfAngle, found: &mut impl FnMut(Result<Place, f64>)) {
         let two_theta = HalfAngle { sin: theta.full_sin(), cos: theta.full_cos() };
         match self {
-            Self::Swing(swing) => swing.each_place(two_theta, found),
+            Self::Swing(all) => all.iter().for_each(|swing| swing.each_place(two_theta, found)),
             Self::Plane { axes, turned_rad } => {
                 let sine = two_theta.full_sin();
                 for sign in [1.0, -1.0] {
@@ -195,16 +196,17 @@ mod tests {
     fn every_arm_points_two_theta_from_the_beam() {
         let axes = [Vector3::y(), -Vector3::x()];
         let still = |angle: f64, outer| Some((angle, outer));
+        let swing = |swing: Swing| Arm::Swing(vec![swing]);
         let arms = [
-            Arm::Swing(Swing { axis: axes[1], carried: Vector3::z(), beam: Vector3::z(), position: 0, still: None }),
-            Arm::Swing(Swing {
+            swing(Swing { axis: axes[1], carried: Vector3::z(), beam: Vector3::z(), position: 0, still: None }),
+            swing(Swing {
                 axis: axes[1],
                 carried: Vector3::z(),
                 beam: rotation(&axes[0], -0.3) * Vector3::z(),
                 position: 1,
                 still: still(0.3, Some(axes[0])),
             }),
-            Arm::Swing(Swing {
+            swing(Swing {
                 axis: axes[0],
                 carried: rotation(&axes[1], 0.2) * Vector3::z(),
                 beam: Vector3::z(),
@@ -219,7 +221,7 @@ mod tests {
             assert!(all.iter().flatten().count() >= 2, "{arm:?}");
             for place in all.iter().flatten() {
                 assert!((place.k_f.z.acos().to_degrees() - 40.0).abs() < 1e-11, "{arm:?} {place:?}");
-                if !matches!(arm, Arm::Swing(Swing { still: None, .. })) {
+                if !matches!(arm, Arm::Swing(all) if all[0].still.is_none()) {
                     assert!((pointing(&axes, place.angles_rad) - place.k_f).norm() < 1e-14);
                 }
             }
@@ -235,7 +237,7 @@ mod tests {
             position: 1,
             still: Some((50f64.to_radians(), Some(Vector3::y()))),
         };
-        let all = places(&Arm::Swing(swing), 40.0);
+        let all = places(&Arm::Swing(vec![swing]), 40.0);
         assert!(all.iter().all(|place| place.is_err_and(|miss| (miss.to_degrees() - 10.0).abs() < 1e-9)));
     }
 

@@ -1,4 +1,4 @@
-use nalgebra::{Rotation3, Vector3};
+use nalgebra::Vector3;
 
 use super::General;
 use super::arm::{Arm, Multiple, Swing};
@@ -35,20 +35,35 @@ impl General {
                 template_deg[i] = at_deg.get();
             }
         }
-        let ties = ties(instrument, rules);
-        let arm = arm(instrument, rules, &held, &template_deg)?;
+        let at = |i: usize| (template_deg[i] - zero_deg[i]).to_radians();
+        let (of_held, mut ties) = sort_ties(ties(instrument, rules), |axis| held.contains(&axis))?;
+        // A held sample axis may hold a detector axis by a tie, in every turn that a fraction allows.
+        let mut still: Vec<(usize, f64)> = held.iter().map(|&i| (i, at(i))).collect();
+        for tie in of_held.iter().filter(|tie| tie.axis >= sample_count) {
+            let other = still.iter().find(|(axis, _)| *axis == tie.to).map(|&(_, angle)| angle).ok_or_else(not_held)?;
+            still.extend(tie.multiple.each_turn(other).map(|angle| (tie.axis, angle)));
+        }
+        ties.extend(of_held.into_iter().filter(|tie| tie.axis < sample_count));
+        let arm = arm(instrument, rules, &still)?;
         let follows = matches!(arm, Arm::Follows(_));
         let mut links = chain(instrument, rules, follows).ok_or_else(too_long)?;
         held.retain(|&i| i < sample_count);
         for &i in &held {
             if let Some(link) = links.place_of(i) {
-                links = links.hold(link, (template_deg[i] - zero_deg[i]).to_radians());
+                links = links.hold(link, at(i));
             }
         }
         let (twist, direction) = twist(rules, crystal)?;
         let known = |axis: usize| held.contains(&axis) || (axis >= sample_count && !follows);
         let (known_ties, open_ties) = sort_ties(ties, known)?;
         let (beam_ties, sample_ties): (Vec<Tie>, Vec<Tie>) = open_ties.iter().partition(|tie| tie.to >= sample_count);
+        if beam_ties.iter().enumerate().any(|(i, tie)| beam_ties[..i].iter().any(|other| other.axis == tie.axis)) {
+            return Err(RuleError::NotCovered(
+                "an axis tied to both detector axes is not covered; accepted is one of the two ties, and one between the \
+                 detector axes"
+                    .to_owned(),
+            ));
+        }
         let (ties, more_ties) = largest_group(&sample_ties)?;
         // What hangs on a known axis is held as soon as that is placed: for the road, any angle will do.
         let then = known_ties.iter().fold(links.clone(), |links, tie| match links.place_of(tie.axis) {
@@ -148,12 +163,7 @@ fn largest_group(ties: &[Tie]) -> Result<(Vec<Tie>, Vec<Tie>), RuleError> {
     Ok(best)
 }
 
-fn arm(
-    instrument: &Instrument,
-    rules: &[Rule],
-    held: &[usize],
-    readings_deg: &[f64; MAX_AXES],
-) -> Result<Arm, RuleError> {
+fn arm(instrument: &Instrument, rules: &[Rule], held: &[(usize, f64)]) -> Result<Arm, RuleError> {
     let sample_count = instrument.sample_axes().len();
     let detector = instrument.detector_axes();
     let direction = |i: usize| detector[i].direction.into_inner();
@@ -165,34 +175,14 @@ fn arm(
     };
     if detector.len() == 1 {
         let swing = Swing { axis: direction(0), carried: Vector3::z(), beam: Vector3::z(), position: 0, still: None };
-        return if swings(&swing) { Ok(Arm::Swing(swing)) } else { Err(along_beam()) };
+        return if swings(&swing) { Ok(Arm::Swing(vec![swing])) } else { Err(along_beam()) };
     }
     let axes = [direction(0), direction(1)];
-    for position in 0..2 {
-        if !held.contains(&(sample_count + 1 - position)) {
-            continue;
-        }
-        let other = 1 - position;
-        let still = detector[other].angle_rad(readings_deg[sample_count + other]);
-        let turn: Rotation3<f64> = rotation(&axes[other], still);
-        let swing = if other == 0 {
-            Swing {
-                axis: axes[1],
-                carried: Vector3::z(),
-                beam: turn.inverse() * Vector3::z(),
-                position,
-                still: Some((still, Some(axes[0]))),
-            }
-        } else {
-            Swing {
-                axis: axes[0],
-                carried: turn * Vector3::z(),
-                beam: Vector3::z(),
-                position,
-                still: Some((still, None)),
-            }
-        };
-        return if swings(&swing) { Ok(Arm::Swing(swing)) } else { Err(along_beam()) };
+    let still: Vec<(usize, f64)> =
+        held.iter().filter_map(|&(axis, angle)| Some((axis.checked_sub(sample_count)?, angle))).collect();
+    if !still.is_empty() {
+        let all: Vec<Swing> = still.iter().map(|&(other, angle)| beside(&axes, other, angle)).collect();
+        return if all.iter().all(swings) { Ok(Arm::Swing(all)) } else { Err(along_beam()) };
     }
     for rule in rules {
         match rule {
@@ -212,6 +202,17 @@ fn arm(
         }
     }
     Ok(Arm::Follows(axes))
+}
+
+/// One of two detector axes stands still at an angle.
+fn beside(axes: &[Vector3<f64>; 2], other: usize, still: f64) -> Swing {
+    let turn = rotation(&axes[other], still);
+    let position = 1 - other;
+    let (carried, beam, outer) = match other {
+        0 => (Vector3::z(), turn.inverse() * Vector3::z(), Some(axes[0])),
+        _ => (turn * Vector3::z(), Vector3::z(), None),
+    };
+    Swing { axis: axes[position], carried, beam, position, still: Some((still, outer)) }
 }
 
 fn swings(swing: &Swing) -> bool {
@@ -240,6 +241,13 @@ fn twist(
         Some(direction) => Ok((twist, Some(direction))),
         None => Err(RuleError::NeedsOrientation(rule.word())),
     }
+}
+
+fn not_held() -> RuleError {
+    RuleError::NotCovered(
+        "a detector axis tied to an axis that is itself tied is not covered; accepted is a tie to a held axis"
+            .to_owned(),
+    )
 }
 
 fn too_long() -> RuleError {

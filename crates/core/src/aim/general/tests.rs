@@ -3,6 +3,7 @@
 
 use nalgebra::{Matrix3, Vector3};
 use proptest::prelude::*;
+use proptest::test_runner::RngSeed;
 
 use crate::aim::{Attempt, CrystalOnHead, Freedom, NoAzimuth, NoSetting, Road, Rule, RuleError, azimuth_rad};
 use crate::frames::{Head, Vector};
@@ -204,7 +205,7 @@ impl Drawn {
 }
 
 proptest! {
-    #![proptest_config(ProptestConfig { max_shrink_iters: 0, ..cases() })]
+    #![proptest_config(ProptestConfig { max_shrink_iters: 0, rng_seed: RngSeed::Fixed(20_261_201), ..cases() })]
 
     /// Completeness: the drawn setting is among those found.
     #[test]
