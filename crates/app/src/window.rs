@@ -6,6 +6,7 @@
 
 mod app;
 mod ask;
+mod band;
 mod command;
 mod derive;
 mod desk;

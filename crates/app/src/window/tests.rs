@@ -2,6 +2,7 @@
 
 mod editing;
 mod files;
+mod layout;
 mod pictures;
 
 use egui::{Theme, vec2};

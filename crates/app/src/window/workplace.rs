@@ -1,18 +1,18 @@
 //! The layout: inputs at the left as a thread of cards, the lattice above the table in the middle, the selected reflection
 //! at the right, the next step below.
 
-use egui::{CentralPanel, Frame, Margin, MenuBar, Panel, RichText, ScrollArea, Stroke, ThemePreference, Ui, vec2};
+use egui::{CentralPanel, Frame, Margin, MenuBar, Panel, RichText, ScrollArea, Stroke, ThemePreference, Ui};
 
 use ringwright_core::session::DEMOS;
 
 use super::App;
+use super::band;
 use super::command::Command;
 use super::edits::{Edits, Field};
 use super::inputs::{self, Bench};
 use super::shared::{Picked, Results};
 use super::strip;
 use super::theme::{GAP, Tones};
-use super::trust;
 use super::views::{LatticeView, PickedSettings, ReflectionTable, ShownKinds, axis_dials};
 
 /// What the views keep from frame to frame.
@@ -166,7 +166,7 @@ impl App {
         let Self { results, picked, views, .. } = self;
         picked.hovered = None;
         let ground = Frame::new().fill(tones.card).inner_margin(Margin::symmetric(10, 3));
-        Panel::top("trust").frame(ground).show(ui, |ui| trust_line(ui, results));
+        Panel::top("trust").frame(ground).show(ui, |ui| band::show(ui, results));
         let height = ui.available_height();
         Panel::bottom("table")
             .default_size(height * 0.42)
@@ -182,22 +182,6 @@ impl App {
             views.lattice.show(ui, results, picked, &views.settings, &mut views.shown);
         });
     }
-}
-
-/// How far the orientation can be trusted, always in sight: its state, and the misfits of its peaks.
-fn trust_line(ui: &mut Ui, results: &Results) {
-    let tones = Tones::in_ui(ui);
-    let (state, words) = inputs::trust(results);
-    ui.horizontal(|ui| {
-        let (rect, _) = ui.allocate_exact_size(vec2(16.0, 18.0), egui::Sense::hover());
-        inputs::mark(ui.painter(), rect.center(), state, tones);
-        ui.label(RichText::new(format!("Orientation {words}")).color(tones.strong));
-        if results.reach_is_stale && results.busy.is_none() && results.reach.is_some() {
-            ui.label(RichText::new("! what is shown below follows from earlier inputs").color(tones.doubt));
-        } else if let Some(report) = results.oriented.as_ref().and_then(|oriented| oriented.report.as_ref()) {
-            ui.add(egui::Label::new(RichText::new(trust::misfits(report)).color(tones.quiet)).truncate());
-        }
-    });
 }
 
 /// A field to select any reflection by its indices, wanted or not.

@@ -56,7 +56,10 @@ impl ReflectionTable {
         {
             self.orders_made += usize::from(made);
         }
-        self.count_row(ui, reach, shown);
+        if made {
+            ui.ctx().request_repaint();
+        }
+        Self::hidden_row(ui, shown);
         let moved = picked.hkl != self.seen;
         if made || moved {
             self.place = picked.hkl.and_then(|hkl| place_of(hkl, reach, self.order.rows()));
@@ -84,7 +87,7 @@ impl ReflectionTable {
         let [least, most] = self.spread(reach);
         ui.horizontal_wrapped(|ui| {
             let name = ui.label("Filter");
-            let edit = TextEdit::singleline(&mut self.text).hint_text("0 0 *   d 0.8..1.5   reachable").desired_width(260.0);
+            let edit = TextEdit::singleline(&mut self.text).hint_text("0 0 *   d 0.8..1.5   reachable").desired_width(206.0);
             let help = "Conditions that must all hold:\n1 0 2   or   0 0 *   with * for any index\nd 0.8..1.5   2theta < 60   \
                         h = 0   a column and its range\nreachable   over_limit   absent   and \"not\" before any";
             ui.add(edit).labelled_by(name.id).on_hover_text(help);
@@ -95,6 +98,7 @@ impl ReflectionTable {
                 self.text.clear();
                 (self.d_least, self.d_most) = (None, None);
             }
+            self.count(ui, reach);
         });
         match read {
             Ok(filter) => filter,
@@ -118,19 +122,24 @@ impl ReflectionTable {
         spread
     }
 
-    fn count_row(&self, ui: &mut Ui, reach: &Reach, shown: &mut ShownKinds) {
+    /// How many rows are shown: those of the frame before, which is asked for again where it was another number.
+    fn count(&self, ui: &mut Ui, reach: &Reach) {
+        let (some, all) = (self.order.rows().len(), reach.table.len());
+        ui.weak(if some == all {
+            format!("{} reflections", grouped(all))
+        } else {
+            format!("{} of {} reflections", grouped(some), grouped(all))
+        });
+    }
+
+    fn hidden_row(ui: &mut Ui, shown: &mut ShownKinds) {
+        if shown.is_everything() {
+            return;
+        }
         ui.horizontal_wrapped(|ui| {
-            let (some, all) = (self.order.rows().len(), reach.table.len());
-            ui.weak(if some == all {
-                format!("{} reflections", grouped(all))
-            } else {
-                format!("{} of {} reflections", grouped(some), grouped(all))
-            });
-            if !shown.is_everything() {
-                ui.weak("Some verdicts are hidden.");
-                if ui.small_button("Show every verdict").clicked() {
-                    *shown = ShownKinds::default();
-                }
+            ui.weak("Some verdicts are hidden.");
+            if ui.small_button("Show every verdict").clicked() {
+                *shown = ShownKinds::default();
             }
         });
     }
@@ -275,14 +284,16 @@ fn place_of(hkl: Hkl, reach: &Reach, rows: &[u32]) -> Option<usize> {
     rows.iter().position(|row| reach.table.row(*row as usize).is_some_and(|row| row.hkl == hkl))
 }
 
+/// Wide enough for what is in it; up to the detail they fit beside each other in the window of a laptop.
 fn width(column: Column) -> Width {
     match column {
-        Column::Hkl => Width::exact(82.0),
-        Column::Spacing | Column::TwoTheta => Width::exact(62.0),
-        Column::Axis(_) => Width::initial(79.0).at_least(70.0),
-        Column::Verdict => Width::exact(106.0),
-        Column::Absent => Width::exact(62.0),
-        Column::Detail => Width::remainder().at_least(220.0).clip(true),
+        Column::Hkl => Width::exact(78.0),
+        Column::Spacing => Width::exact(52.0),
+        Column::TwoTheta => Width::exact(56.0),
+        Column::Absent => Width::exact(54.0),
+        Column::Verdict => Width::exact(108.0),
+        Column::Detail => Width::initial(258.0).range(120.0..=600.0).resizable(true).clip(true),
+        Column::Axis(_) => Width::initial(80.0).at_least(70.0),
     }
 }
 
