@@ -91,19 +91,19 @@ pub fn misfits(report: &OrientationReport) -> String {
     let angle = &report.pair.angle_deg;
     let mut text = format!("Misfits: angle {:+.3}° {}", angle.misfit(), sign(angle.agrees()));
     for (peak, d) in [&report.pair.first, &report.pair.second].into_iter().zip(&report.pair.d_angstrom) {
-        text.push_str(&format!(" · d of {} {:+.4} Å {}", peak.hkl, d.misfit(), sign(d.agrees())));
+        text.push_str(&format!("; d({}) {:+.4} Å {}", peak.hkl, d.misfit(), sign(d.agrees())));
     }
     let off = |peak: &LaterPeak| {
         format!("{} off {:.3}° {}", peak.observation.hkl, peak.direction_deg.observed, sign(peak.agrees()))
     };
     if report.later.len() <= MOST {
         for peak in &report.later {
-            text.push_str(&format!(" · {}", off(peak)));
+            text.push_str(&format!("; {}", off(peak)));
         }
     } else if let Some(worst) =
         report.later.iter().max_by(|a, b| a.direction_deg.observed.total_cmp(&b.direction_deg.observed))
     {
-        text.push_str(&format!(" · {} later peaks, worst {}", report.later.len(), off(worst)));
+        text.push_str(&format!("; {} later peaks, worst {}", report.later.len(), off(worst)));
     }
     signs(&text)
 }

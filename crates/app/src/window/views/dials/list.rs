@@ -40,14 +40,21 @@ pub(super) fn settings_list(ui: &mut Ui, reach: &Reach, settings: &mut PickedSet
                 let Some(judged) = settings.all().get(index) else { return };
                 let words = in_words(judged, reach, index == 0 && settings.has_chosen());
                 row.set_selected(index == settings.shown_index());
+                let mut words_left = 0.0;
                 row.col(|ui| {
                     verdict_mark(ui, judged);
-                    below(ui, &words, judged.setting.is_some());
+                    words_left = ui.max_rect().right() + 8.0;
                 });
                 for i in 0..names.len() {
                     let reading = judged.setting.and_then(|s| s.readings_deg().get(i).copied());
                     let text = reading.map_or_else(String::new, |deg| fixed(deg, 3));
-                    row.col(|ui| right(ui, &text, TextStyle::Monospace, 0.27));
+                    row.col(|ui| {
+                        right(ui, &text, TextStyle::Monospace, 0.27);
+                        // The last cell writes across the row: the grounds of all others are painted by then.
+                        if i + 1 == names.len() {
+                            below(ui, words_left, &words, judged.setting.is_some());
+                        }
+                    });
                 }
                 let response = row.response();
                 let spoken = format!("Setting {}: {words}", index + 1);
@@ -92,13 +99,14 @@ fn right(ui: &Ui, text: &str, style: TextStyle, part: f32) {
     ui.painter().text(at, egui::Align2::RIGHT_CENTER, text, font, colour);
 }
 
-/// What a setting comes to, across the row: under its readings, or alone where there are none.
-fn below(ui: &Ui, text: &str, under_readings: bool) {
+/// What a setting comes to, across the row from `left`: under its readings, or alone where there are none.
+fn below(ui: &Ui, left: f32, text: &str, under_readings: bool) {
     let (font, colour) = (TextStyle::Small.resolve(ui.style()), ui.visuals().weak_text_color());
     let rect = ui.max_rect();
     let part = if under_readings { 0.74 } else { 0.5 };
-    let at = egui::pos2(rect.right() + 6.0, rect.top() + part * rect.height());
-    // The cell is as wide as the mark; the text may go on over the cells beside it.
-    let clip = ui.clip_rect().with_max_x(f32::INFINITY).intersect(ui.ctx().content_rect());
-    ui.painter().with_clip_rect(clip).text(at, egui::Align2::LEFT_CENTER, text, font, colour);
+    let mut job = egui::text::LayoutJob::simple_singleline(text.to_owned(), font, colour);
+    job.wrap = egui::text::TextWrapping::truncate_at_width(rect.right() - left);
+    let galley = ui.painter().layout_job(job);
+    let at = egui::pos2(left, rect.top() + part * rect.height() - 0.5 * galley.size().y);
+    ui.painter().with_clip_rect(ui.clip_rect().with_min_x(left)).galley(at, galley, colour);
 }

@@ -70,7 +70,7 @@ impl<'a> Labels<'a> {
         let mut job = LayoutJob::default();
         job.append(text, 0.0, TextFormat::simple(self.font.clone(), colour));
         if !subscript.is_empty() {
-            let small = FontId::new(self.font.size * 0.85, self.font.family.clone());
+            let small = FontId::new(self.font.size * 0.78, self.font.family.clone());
             let format = TextFormat { valign: egui::Align::BOTTOM, ..TextFormat::simple(small, colour) };
             job.append(subscript, 0.0, format);
         }

@@ -156,6 +156,11 @@ impl ReflectionTable {
         }
         let columns: Vec<Column> = Column::all(reach.instrument.axis_count()).collect();
         let mut clicked = None;
+        // Where the axes find no room beside it, the detail takes what is left and they lie beyond the edge.
+        let left = area.width() - BEFORE_DETAIL;
+        let detail =
+            if left < DETAIL_WIDTH + 80.0 * reach.instrument.axis_count() as f32 { left } else { DETAIL_WIDTH };
+        let detail = detail.max(150.0);
         ui.push_id("table", |ui| {
             ui.spacing_mut().item_spacing.x = 2.0;
             let mut table = TableBuilder::new(ui)
@@ -165,7 +170,7 @@ impl ReflectionTable {
                 .min_scrolled_height(0.0)
                 .animate_scrolling(false);
             for column in &columns {
-                table = table.column(width(*column));
+                table = table.column(width(*column, detail));
             }
             if let Some(place) = scroll_to {
                 table = table.scroll_to_row(place, None);
@@ -284,15 +289,20 @@ fn place_of(hkl: Hkl, reach: &Reach, rows: &[u32]) -> Option<usize> {
     rows.iter().position(|row| reach.table.row(*row as usize).is_some_and(|row| row.hkl == hkl))
 }
 
+/// Widths of the columns before the detail, with the gaps and the scroll bar.
+const BEFORE_DETAIL: f32 = 78.0 + 52.0 + 56.0 + 54.0 + 108.0 + 5.0 * 2.0 + 8.0;
+/// Width of the detail where there is room for everything.
+const DETAIL_WIDTH: f32 = 270.0;
+
 /// Wide enough for what is in it; up to the detail they fit beside each other in the window of a laptop.
-fn width(column: Column) -> Width {
+fn width(column: Column, detail: f32) -> Width {
     match column {
         Column::Hkl => Width::exact(78.0),
         Column::Spacing => Width::exact(52.0),
         Column::TwoTheta => Width::exact(56.0),
         Column::Absent => Width::exact(54.0),
         Column::Verdict => Width::exact(108.0),
-        Column::Detail => Width::initial(258.0).range(120.0..=600.0).resizable(true).clip(true),
+        Column::Detail => Width::exact(detail),
         Column::Axis(_) => Width::initial(80.0).at_least(70.0),
     }
 }
