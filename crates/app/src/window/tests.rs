@@ -3,6 +3,7 @@
 mod editing;
 mod files;
 mod layout;
+mod machine;
 mod pictures;
 
 use egui::{Theme, vec2};

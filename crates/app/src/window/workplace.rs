@@ -135,6 +135,11 @@ impl App {
         Panel::left("inputs").exact_size(INPUTS_WIDTH).resizable(false).frame(frame).show(ui, |ui| {
             let Self { opened, edits, results, instrument, machines, .. } = self;
             let instrument = instrument.as_ref();
+            let misfits = results.problems.iter().flat_map(|problem| {
+                let fields = inputs::fields_of(&opened.session, problem);
+                fields.into_iter().map(|field| (field, problem.message.clone()))
+            });
+            edits.mark(misfits);
             let mut bench = Bench { session: &mut opened.session, edits, results, instrument, machines, commands };
             inputs::show(ui, &mut bench);
         });
