@@ -8,7 +8,10 @@ use super::theme::Tones;
 use super::trust;
 
 /// Width of U with its name.
-const MATRIX_WIDTH: f32 = 204.0;
+const MATRIX_WIDTH: f32 = 214.0;
+
+/// Height of three lines.
+const HEIGHT: f32 = 46.0;
 
 /// Shows the band.
 pub fn show(ui: &mut Ui, results: &Results) {
@@ -17,6 +20,8 @@ pub fn show(ui: &mut Ui, results: &Results) {
     ui.horizontal_top(|ui| {
         let width = ui.available_width() - MATRIX_WIDTH - ui.spacing().item_spacing.x;
         ui.allocate_ui_with_layout(vec2(width, 18.0), Layout::top_down(Align::Min), |ui| {
+            // The same room in every state, so that nothing below moves when the state changes.
+            ui.set_min_size(vec2(width, HEIGHT));
             ui.set_max_width(width);
             ui.spacing_mut().item_spacing.y = 1.0;
             statement(ui, results);
@@ -37,12 +42,13 @@ fn statement(ui: &mut Ui, results: &Results) {
     ui.horizontal(|ui| {
         let (rect, _) = ui.allocate_exact_size(vec2(16.0, 18.0), egui::Sense::hover());
         inputs::mark(ui.painter(), rect.center(), state, tones);
-        ui.label(RichText::new(format!("Orientation {words}")).color(tones.strong));
+        let words = if words == "none" { "No orientation".to_owned() } else { format!("Orientation {words}") };
+        ui.label(RichText::new(words).color(tones.strong));
     });
 }
 
 fn matrix(ui: &mut Ui, results: &Results) {
-    let Some(oriented) = &results.oriented else { return };
+    let Some(oriented) = results.oriented.as_ref().filter(|_| results.orient_error.is_none()) else { return };
     let tones = Tones::in_ui(ui);
     let u = oriented.orientation.head_from_crystal.matrix();
     ui.label(RichText::new("U").color(tones.quiet).small()).on_hover_text(

@@ -139,7 +139,8 @@ impl Edits {
         let mut dragged = None;
         if !name.is_empty() {
             let quiet = Tones::in_ui(ui).quiet;
-            let handle = ui.add(Label::new(RichText::new(name).color(quiet)).selectable(false).sense(Sense::drag()));
+            // Not a stop for the keyboard: the field beside it is one.
+            let handle = ui.add(Label::new(RichText::new(name).color(quiet)).selectable(false).sense(Sense::DRAG));
             let handle = handle.on_hover_cursor(egui::CursorIcon::ResizeHorizontal);
             let steps = f64::from(handle.drag_delta().x).round();
             if steps != 0.0 {

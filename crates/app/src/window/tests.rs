@@ -5,6 +5,7 @@ mod files;
 mod layout;
 mod machine;
 mod pictures;
+mod states;
 
 use egui::{Theme, vec2};
 use egui_kittest::kittest::Queryable;

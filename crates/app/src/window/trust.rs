@@ -89,23 +89,21 @@ pub fn misfits(report: &OrientationReport) -> String {
     const MOST: usize = 4;
     let sign = |agrees: bool| if agrees { "✓" } else { "!" };
     let angle = &report.pair.angle_deg;
-    let mut text = format!("Misfits: angle {:+.3}° {}", angle.misfit(), sign(angle.agrees()));
+    let mut items = vec![format!("angle {:+.3}° {}", angle.misfit(), sign(angle.agrees()))];
     for (peak, d) in [&report.pair.first, &report.pair.second].into_iter().zip(&report.pair.d_angstrom) {
-        text.push_str(&format!("; d({}) {:+.4} Å {}", peak.hkl, d.misfit(), sign(d.agrees())));
+        items.push(format!("d({}) {:+.4} Å {}", peak.hkl, d.misfit(), sign(d.agrees())));
     }
     let off = |peak: &LaterPeak| {
         format!("{} off {:.3}° {}", peak.observation.hkl, peak.direction_deg.observed, sign(peak.agrees()))
     };
-    if report.later.len() <= MOST {
-        for peak in &report.later {
-            text.push_str(&format!("; {}", off(peak)));
-        }
-    } else if let Some(worst) =
-        report.later.iter().max_by(|a, b| a.direction_deg.observed.total_cmp(&b.direction_deg.observed))
-    {
-        text.push_str(&format!("; {} later peaks, worst {}", report.later.len(), off(worst)));
+    let worst = report.later.iter().max_by(|a, b| a.direction_deg.observed.total_cmp(&b.direction_deg.observed));
+    match worst.filter(|_| report.later.len() > MOST) {
+        None => items.extend(report.later.iter().map(off)),
+        Some(worst) => items.push(format!("{} later peaks, worst {}", report.later.len(), off(worst))),
     }
-    signs(&text)
+    // A line ends between two misfits, never inside one.
+    let items: Vec<String> = items.into_iter().map(|item| item.replace(' ', "\u{a0}")).collect();
+    signs(&format!("Misfits: {}", items.join("; ")))
 }
 
 /// The same text with minus signs that can be seen.

@@ -109,7 +109,7 @@ impl App {
     fn bottom(&mut self, ui: &mut Ui, commands: &mut Vec<Command>) {
         let frame = bar(ui, 6);
         Panel::bottom("next").frame(frame).show(ui, |ui| {
-            let next = strip::next_step(&self.edits, &self.results);
+            let next = strip::next_step(&self.opened.session, &self.edits, &self.results);
             strip::show(ui, &next, &self.results, self.message.as_ref(), commands);
         });
         if self.files.bar_is_open() {
@@ -150,8 +150,11 @@ impl App {
         Panel::right("reflection").exact_size(DETAIL_WIDTH).resizable(false).frame(frame).show(ui, |ui| {
             ScrollArea::vertical().auto_shrink(false).show(ui, |ui| {
                 let Self { edits, results, picked, views, .. } = self;
-                ui.label(RichText::new("This reflection").color(Tones::in_ui(ui).quiet));
-                chooser(ui, edits, results, picked);
+                ui.horizontal(|ui| {
+                    ui.label(RichText::new("This reflection").color(Tones::in_ui(ui).quiet));
+                    chooser(ui, edits, results, picked);
+                });
+                edits.show_errors(ui, "reflection", &[]);
                 axis_dials(ui, results, picked, &mut views.settings);
                 if let Some(hkl) = picked.hkl.filter(|_| views.settings.shown_setting().is_some()) {
                     ui.add_space(GAP);
@@ -170,7 +173,7 @@ impl App {
         let table = Frame::new().fill(tones.card).inner_margin(Margin::symmetric(8, 6));
         let Self { results, picked, views, .. } = self;
         picked.hovered = None;
-        let ground = Frame::new().fill(tones.card).inner_margin(Margin::symmetric(10, 3));
+        let ground = Frame::new().fill(tones.card).inner_margin(Margin::symmetric(10, 5));
         Panel::top("trust").frame(ground).show(ui, |ui| band::show(ui, results));
         let height = ui.available_height();
         Panel::bottom("table")
@@ -200,7 +203,6 @@ fn chooser(ui: &mut Ui, edits: &mut Edits, results: &Results, picked: &mut Picke
     if let Some(hkl) = edits.field(ui, &field, &shown, inputs::read_hkl) {
         picked.hkl = Some(hkl);
     }
-    edits.show_errors(ui, "reflection", &[]);
 }
 
 fn press(ui: &mut Ui, command: Command, commands: &mut Vec<Command>) {

@@ -31,3 +31,18 @@ fn an_orientation_that_is_not_confirmed_says_so_above_the_lattice() {
     assert!(at.bottom() < 120.0, "{at}");
     assert!(harness.query_all_by_label_contains("Two peaks cannot prove themselves").count() > 0);
 }
+
+#[test]
+fn what_a_row_has_no_room_for_is_told_under_the_pointer() {
+    let mut harness = demo(0);
+    press(&mut harness, "also those absent by symmetry");
+    harness.get_by_label("Filter").focus();
+    harness.run_steps(2);
+    harness.get_by_label("Filter").type_text("3 0 0");
+    settle(&mut harness);
+    let row = harness.get_by_role(egui::Role::Row).rect();
+    harness.hover_at(egui::pos2(row.left() + 20.0, row.center().y));
+    harness.run_steps(60);
+    // P n m a: h 0 0 with odd h is absent.
+    assert!(harness.query_by_label_contains("absent by symmetry: ").is_some());
+}

@@ -1,6 +1,6 @@
 use egui::{Role, Sense, TextStyle, Ui, WidgetInfo};
 use egui_extras::{Column, TableBuilder};
-use ringwright_core::reach::JudgedSetting;
+use ringwright_core::reach::{JudgedSetting, Verdict};
 
 use super::super::super::Reach;
 use super::super::number::fixed;
@@ -8,7 +8,7 @@ use super::super::palette::{Kind, Palette, mark_place, paint_mark};
 use super::super::settings::PickedSettings;
 
 /// Readings above, what they come to below.
-const ROW_HEIGHT: f32 = 31.0;
+const ROW_HEIGHT: f32 = 29.0;
 /// Width of the verdict's mark.
 const MARK_WIDTH: f32 = 18.0;
 /// Least width of a reading.
@@ -74,8 +74,10 @@ pub(super) fn settings_list(ui: &mut Ui, reach: &Reach, settings: &mut PickedSet
 
 /// The verdict of one setting in words.
 pub(super) fn in_words(judged: &JudgedSetting, reach: &Reach, chosen: bool) -> String {
-    if !judged.verdict.is_reachable() {
-        return judged.verdict.detail(&reach.instrument);
+    match judged.verdict {
+        Verdict::Reachable => {}
+        Verdict::CannotMake { by_deg } => return format!("the axes miss the angle by {}°", fixed(by_deg, 3)),
+        other => return other.detail(&reach.instrument),
     }
     let room = if judged.clearance_deg.is_finite() {
         format!("{}° from the nearest limit", fixed(judged.clearance_deg, 1))
@@ -101,12 +103,14 @@ fn right(ui: &Ui, text: &str, style: TextStyle, part: f32) {
 
 /// What a setting comes to, across the row from `left`: under its readings, or alone where there are none.
 fn below(ui: &Ui, left: f32, text: &str, under_readings: bool) {
-    let (font, colour) = (TextStyle::Small.resolve(ui.style()), ui.visuals().weak_text_color());
+    let (font, colour) = (TextStyle::Small.resolve(ui.style()), ui.visuals().text_color());
     let rect = ui.max_rect();
     let part = if under_readings { 0.74 } else { 0.5 };
     let mut job = egui::text::LayoutJob::simple_singleline(text.to_owned(), font, colour);
     job.wrap = egui::text::TextWrapping::truncate_at_width(rect.right() - left);
     let galley = ui.painter().layout_job(job);
     let at = egui::pos2(left, rect.top() + part * rect.height() - 0.5 * galley.size().y);
-    ui.painter().with_clip_rect(ui.clip_rect().with_min_x(left)).galley(at, galley, colour);
+    let mut painter = ui.painter().clone();
+    painter.set_clip_rect(ui.clip_rect().with_min_x(left));
+    painter.galley(at, galley, colour);
 }

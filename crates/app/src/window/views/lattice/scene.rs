@@ -96,7 +96,9 @@ pub(super) fn build(nodes: &Nodes, look: &Look, scene: &mut Scene) {
 
 fn add_nodes(nodes: &Nodes, look: &Look, place: &Place, radius: f64, discs: &mut Vec<Disc>) {
     let palette = Palette::of(look.dark);
-    let size = (NODE_PART * nodes.spacing).min(NODE_AT_MOST * radius);
+    // Few nodes that stand far apart, as in a list, are as large as those of a short cell.
+    let apart = nodes.spacing.max(0.8 * radius / (nodes.list.len().max(1) as f64).cbrt());
+    let size = (NODE_PART * apart).min(NODE_AT_MOST * radius);
     discs.clear();
     discs.reserve(nodes.list.len());
     for (row, node) in (0..).zip(&nodes.list) {

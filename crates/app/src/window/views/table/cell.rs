@@ -1,4 +1,5 @@
 use egui::{Align2, Color32, FontId, TextStyle, Ui};
+use ringwright_core::crystal::Presence;
 use ringwright_core::reach::ReachRow;
 
 use super::super::super::Reach;
@@ -51,9 +52,9 @@ pub(super) fn write(ui: &mut Ui, column: Column, row: &ReachRow, reach: &Reach) 
     }
 }
 
-/// A line of lesser weight that ends with dots where it has no room.
+/// A small line that ends with dots where it has no room.
 fn one_line(ui: &Ui, text: String, width: f32) -> std::sync::Arc<egui::Galley> {
-    let (font, colour) = (TextStyle::Small.resolve(ui.style()), ui.visuals().weak_text_color());
+    let (font, colour) = (TextStyle::Small.resolve(ui.style()), ui.visuals().text_color());
     let mut job = egui::text::LayoutJob::simple_singleline(text, font, colour);
     job.wrap = egui::text::TextWrapping::truncate_at_width(width);
     ui.painter().layout_job(job)
@@ -63,6 +64,20 @@ fn one_line(ui: &Ui, text: String, width: f32) -> std::sync::Arc<egui::Galley> {
 fn number(ui: &Ui, text: &str, colour: Color32) {
     let font: FontId = TextStyle::Monospace.resolve(ui.style());
     ui.painter().text(ui.max_rect().right_center(), Align2::RIGHT_CENTER, text, font, colour);
+}
+
+/// What the cells of a row leave out: a detail that has no room, and the operation that makes it absent.
+pub(super) fn not_in_sight(ctx: &egui::Context, row: &ReachRow, reach: &Reach, width: f32) -> Option<String> {
+    let mut lines = Vec::new();
+    let (text, font) = (detail(row, reach), TextStyle::Small.resolve(&ctx.global_style()));
+    let needed = ctx.fonts_mut(|fonts| fonts.layout_no_wrap(text.clone(), font, Color32::PLACEHOLDER).size().x);
+    if needed > width - LEFT_PAD {
+        lines.push(text);
+    }
+    if let Some(operation) = row.absent {
+        lines.push(format!("absent by symmetry: {}", reach.space_group.reason(Presence::Absent { operation })));
+    }
+    (!lines.is_empty()).then(|| lines.join("\n"))
 }
 
 /// A row in words, for those who hear it.

@@ -196,6 +196,12 @@ impl ReflectionTable {
                         {
                             clicked = Some((at, data.hkl));
                         }
+                        let response = row.response();
+                        if response.hovered()
+                            && let Some(more) = cell::not_in_sight(&response.ctx, &data, reach, detail)
+                        {
+                            response.on_hover_text(more);
+                        }
                     }
                 });
             });
