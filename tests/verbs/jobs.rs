@@ -1,6 +1,7 @@
 //! Every verb on every session.
 
 use std::collections::BTreeMap;
+use std::path::Path;
 
 use ringwright_cli::{Outcome, Start};
 use ringwright_core::crystal::UnitCell;
@@ -151,15 +152,21 @@ fn demo_does_the_whole_job_and_then_asks_for_the_window() {
             assert!(run.out.contains(part), "{part}: {}", run.out);
         }
         let run = ringwright(&["demo", demo.name]);
-        assert_eq!(run.outcome, Outcome::OpenWindow { on: Start::Demo(demo), without_display: 0 });
+        assert_eq!(run.outcome, Outcome::OpenWindow { on: Start::Demo(demo), machines: None, without_display: 0 });
     }
     let alone = ringwright::<&str>(&[]).outcome;
-    assert_eq!(alone, Outcome::OpenWindow { on: Start::Demo(&DEMOS[0]), without_display: 2 });
+    assert_eq!(alone, Outcome::OpenWindow { on: Start::Demo(&DEMOS[0]), machines: None, without_display: 2 });
     let path = Folder::new().path("fixed-chi.ron");
     assert_eq!(ringwright(&[&path]).status(), 2, "its folder is gone");
     let folder = Folder::new();
     let path = folder.path("fixed-chi.ron");
-    assert_eq!(ringwright(&[&path]).outcome, Outcome::OpenWindow { on: Start::File(path), without_display: 2 });
+    let opens = |machines| Outcome::OpenWindow { on: Start::File(path.clone()), machines, without_display: 2 };
+    assert_eq!(ringwright(&[&path]).outcome, opens(None));
+    let machines = path.parent().unwrap().to_owned();
+    let with_folder = |folder: &Path| ringwright(&["--machines".as_ref(), folder.as_os_str(), path.as_os_str()]);
+    assert_eq!(with_folder(&machines).outcome, opens(Some(machines)));
+    let run = with_folder(&folder.path("not-there"));
+    assert!(run.status() == 2 && run.err.contains("there is no such folder"), "{}", run.err);
 }
 
 #[test]

@@ -16,6 +16,6 @@ fn main() -> ExitCode {
     };
     match outcome {
         Outcome::Finished(status) => ExitCode::from(status),
-        Outcome::OpenWindow { on, without_display } => stage::open(on, without_display),
+        Outcome::OpenWindow { on, machines, without_display } => stage::open(on, machines, without_display),
     }
 }

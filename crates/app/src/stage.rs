@@ -1,13 +1,14 @@
 //! Opens the window, or says in one line why it cannot and what does the same job without one.
 
 use std::io::Write;
+use std::path::PathBuf;
 use std::process::ExitCode;
 
 use ringwright_cli::{HEADLESS_VERBS, Start};
 
-/// Opens the window on something; `without_display` is the exit status where there is none.
-pub fn open(on: Start, without_display: u8) -> ExitCode {
-    match try_open(on) {
+/// Opens the window on something, with a folder of more machines; `without_display` is the exit status where there is none.
+pub fn open(on: Start, machines: Option<PathBuf>, without_display: u8) -> ExitCode {
+    match try_open(on, machines) {
         Ok(()) => ExitCode::SUCCESS,
         Err(reason) => {
             let reason = in_one_line(&reason);
@@ -28,12 +29,12 @@ fn in_one_line(reason: &str) -> String {
 }
 
 #[cfg(not(feature = "window"))]
-fn try_open(_: Start) -> Result<(), String> {
+fn try_open(_: Start, _: Option<PathBuf>) -> Result<(), String> {
     Err("this build has none".to_owned())
 }
 
 #[cfg(feature = "window")]
-fn try_open(on: Start) -> Result<(), String> {
+fn try_open(on: Start, machines: Option<PathBuf>) -> Result<(), String> {
     use std::panic::{self, AssertUnwindSafe};
     use std::sync::Arc;
     use std::sync::Mutex;
@@ -57,7 +58,7 @@ fn try_open(on: Start) -> Result<(), String> {
             *kept = info.payload_as_str().unwrap_or("the window system gave up").to_owned();
         }
     }));
-    match panic::catch_unwind(AssertUnwindSafe(|| window::open(start))) {
+    match panic::catch_unwind(AssertUnwindSafe(|| window::open(start, machines))) {
         Ok(result) => result,
         Err(panic) if window::has_opened() => panic::resume_unwind(panic),
         Err(_) => Err(message.lock().map(|kept| kept.clone()).unwrap_or_default()),

@@ -6,6 +6,7 @@
 
 mod app;
 mod ask;
+mod band;
 mod command;
 mod derive;
 mod desk;
@@ -41,11 +42,11 @@ pub enum Start {
     File(PathBuf),
 }
 
-/// Opens the window and comes back when it is closed.
+/// Opens the window and comes back when it is closed. `machines` is a folder with more machine files.
 ///
 /// # Errors
 /// If the session cannot be opened, or if there is no display, no GL or no X library; the message says which.
-pub fn open(start: Start) -> Result<(), String> {
+pub fn open(start: Start, machines: Option<PathBuf>) -> Result<(), String> {
     let viewport = egui::ViewportBuilder::default()
         .with_title("Ringwright")
         .with_app_id("ringwright")
@@ -53,7 +54,7 @@ pub fn open(start: Start) -> Result<(), String> {
         .with_min_inner_size([1000.0, 640.0]);
     let options = eframe::NativeOptions { viewport, renderer: eframe::Renderer::Glow, ..Default::default() };
     let create = move |cc: &eframe::CreationContext<'_>| -> Result<Box<dyn eframe::App>, Box<dyn std::error::Error + Send + Sync>> {
-        let app = App::new(&cc.egui_ctx, &start, Options::default())?;
+        let app = App::new(&cc.egui_ctx, &start, Options { machines, ..Options::default() })?;
         OPENED.store(true, Ordering::Relaxed);
         Ok(Box::new(app))
     };

@@ -12,11 +12,15 @@ use ringwright_core::route::DEFAULT_TOLERANCE_DEG;
 pub struct Arguments {
     /// A session file to open in the window.
     pub session: Option<PathBuf>,
+    /// A folder with more machine files for the window, looked through after those of the program and those beside the
+    /// session.
+    #[arg(long, value_name = "FOLDER")]
+    pub machines: Option<PathBuf>,
     #[command(subcommand)]
     pub verb: Option<Verb>,
 }
 
-const STATUS: &str = "Exit status: 0 done, 1 the answer is no, 2 bad input.\n\nExample:\n  ringwright demo --headless";
+const STATUS: &str = "Exit status: 0 done, 1 the answer is no, 2 bad input.\n\nExample:\n  ringwright demo --headless\n  ringwright --machines our-machines night.ron";
 
 #[derive(Debug, Subcommand)]
 pub enum Verb {

@@ -50,6 +50,8 @@ pub enum Outcome {
     OpenWindow {
         /// What it opens on.
         on: Start,
+        /// A folder with more machine files.
+        machines: Option<PathBuf>,
         /// The exit status if there is no display. After headless work that is done it is [`DONE`]: the window was only an extra.
         without_display: u8,
     },
@@ -72,7 +74,7 @@ pub fn run(arguments: impl IntoIterator<Item = OsString>, streams: &mut Streams<
     };
     let mut desktop = Desktop::new(streams);
     let result = match arguments.verb {
-        None => verbs::window(arguments.session),
+        None => verbs::window(arguments.session, arguments.machines),
         Some(Verb::Orient(a)) => verbs::orient(&a, &mut desktop).map(Outcome::Finished),
         Some(Verb::Reach(a)) => verbs::reach(&a, &mut desktop).map(Outcome::Finished),
         Some(Verb::Plan(a)) => verbs::plan(&a, &mut desktop).map(Outcome::Finished),

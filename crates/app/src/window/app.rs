@@ -2,7 +2,7 @@ use std::path::{Path, PathBuf};
 use std::sync::Arc;
 
 use ringwright_core::instrument::Instrument;
-use ringwright_core::session::{DEMOS, OpenedSession, Session, demo};
+use ringwright_core::session::{DEMOS, MachineLibrary, OpenedSession, Session, demo};
 
 use super::ask::{Ask, Reply};
 use super::command::Command;
@@ -28,6 +28,8 @@ pub struct App {
     /// The machine as it is chosen now; a session that does not fit together can still have one.
     pub(super) instrument: Option<Instrument>,
     pub(super) machines: Vec<String>,
+    /// A folder with more machine files.
+    machine_folder: Option<PathBuf>,
     pub(super) is_edited: bool,
     pub(super) desk: Desk,
     pub(super) wake: Arc<dyn Fn() + Send + Sync>,
@@ -41,15 +43,17 @@ pub struct App {
 }
 
 /// What is different where there is nobody to ask.
-#[derive(Debug, Clone, Copy)]
+#[derive(Debug, Clone)]
 pub struct Options {
     /// How a person is asked for a file.
     pub dialogue: Dialogue,
+    /// A folder with more machine files, looked through after those of the program and those beside the session.
+    pub machines: Option<PathBuf>,
 }
 
 impl Default for Options {
     fn default() -> Self {
-        Self { dialogue: system_dialogue }
+        Self { dialogue: system_dialogue, machines: None }
     }
 }
 
@@ -71,7 +75,7 @@ impl App {
         let wake: Arc<dyn Fn() + Send + Sync> = Arc::new(move || waker.request_repaint());
         let woken = Arc::clone(&wake);
         let desk = Desk::new(move || woken()).map_err(|error| format!("no thread for the work: {error}"))?;
-        let machines = opened.library(None).names();
+        let machines = opened.library(options.machines.clone()).names();
         Ok(Self {
             opened,
             edits: Edits::default(),
@@ -83,6 +87,7 @@ impl App {
             message: None,
             instrument: None,
             machines,
+            machine_folder: options.machines,
             is_edited: false,
             desk,
             wake,
@@ -124,11 +129,17 @@ impl App {
         }
     }
 
+    /// Where machines are looked for.
+    pub(super) fn library(&self) -> MachineLibrary {
+        self.opened.library(self.machine_folder.clone())
+    }
+
     pub(super) fn ask_desk(&mut self) {
         let session = self.opened.session.clone();
-        let library = self.opened.library(None);
+        let library = self.library();
         if self.seen.as_ref().is_none_or(|seen| seen.machine != session.machine) {
-            self.instrument = session.resolve_machine(&library).ok();
+            // While its description does not hold, the machine as it was keeps the fields of peaks and rules alive.
+            self.instrument = session.resolve_machine(&library).ok().or(self.instrument.take());
         }
         self.is_edited = self.opened.is_edited();
         self.seen = Some(session.clone());
@@ -147,7 +158,8 @@ impl App {
     /// Begins with another session. Nothing of the old one stays.
     fn replace(&mut self, opened: OpenedSession) {
         self.message = Some(Message { text: format!("Opened {}", opened.file()), failed: false });
-        self.machines = opened.library(None).names();
+        self.machines = opened.library(self.machine_folder.clone()).names();
+        self.instrument = None;
         self.opened = opened;
         self.edits = Edits::default();
         self.results = Results::default();
@@ -226,7 +238,7 @@ impl App {
 
     fn save_as(&mut self, path: &Path) -> Result<(), String> {
         let outcome = self.opened.save_as(path).map_err(|error| error.to_string())?;
-        self.machines = self.opened.library(None).names();
+        self.machines = self.library().names();
         self.saved(&outcome);
         Ok(())
     }

@@ -13,6 +13,8 @@ use super::theme::Tones;
 #[derive(Debug, Clone, Default, PartialEq)]
 pub struct Edits {
     pending: BTreeMap<String, Pending>,
+    /// Fields whose values do not fit together, by path, with what is wrong.
+    marked: Vec<(String, String)>,
 }
 
 #[derive(Debug, Clone, PartialEq)]
@@ -36,6 +38,12 @@ pub struct Field<'a> {
 }
 
 impl Edits {
+    /// Marks fields whose values were taken but do not fit together: paths, each with what is wrong.
+    pub fn mark(&mut self, marked: impl Iterator<Item = (String, String)>) {
+        self.marked.clear();
+        self.marked.extend(marked);
+    }
+
     /// How many fields under a path hold a text that was turned away.
     pub fn refused_under(&self, path: &str) -> usize {
         self.pending.iter().filter(|(p, pending)| is_under(p, path) && pending.error.is_some()).count()
@@ -73,11 +81,13 @@ impl Edits {
         let id = ui.make_persistent_id(("field", field.path));
         let pending = self.pending.get(field.path);
         let error = pending.and_then(|p| p.error.clone());
+        let misfit = self.marked.iter().find(|(path, _)| is_under(field.path, path)).map(|(_, what)| what.clone());
+        let told = error.clone().or(misfit);
         let mut text = pending.map_or_else(|| shown.to_owned(), |p| p.text.clone());
         let tones = Tones::in_ui(ui);
         let response = ui
             .scope(|ui| {
-                if error.is_some() {
+                if told.is_some() {
                     let widgets = &mut ui.visuals_mut().widgets;
                     for state in [&mut widgets.inactive, &mut widgets.hovered] {
                         state.bg_stroke = Stroke::new(1.5, tones.bad);
@@ -88,7 +98,7 @@ impl Edits {
                 ui.add_sized(vec2(field.width, ui.spacing().interact_size.y), edit)
             })
             .inner;
-        describe(ui, &response, field, error.as_deref());
+        describe(ui, &response, field, told.as_deref());
         if response.has_focus() && ui.input(|i| i.key_pressed(egui::Key::Escape)) {
             self.pending.remove(field.path);
             return None;
@@ -129,7 +139,8 @@ impl Edits {
         let mut dragged = None;
         if !name.is_empty() {
             let quiet = Tones::in_ui(ui).quiet;
-            let handle = ui.add(Label::new(RichText::new(name).color(quiet)).selectable(false).sense(Sense::drag()));
+            // Not a stop for the keyboard: the field beside it is one.
+            let handle = ui.add(Label::new(RichText::new(name).color(quiet)).selectable(false).sense(Sense::DRAG));
             let handle = handle.on_hover_cursor(egui::CursorIcon::ResizeHorizontal);
             let steps = f64::from(handle.drag_delta().x).round();
             if steps != 0.0 {

@@ -1,6 +1,7 @@
 //! The left column: the inputs and what follows from them at once, as one thread of cards. Each card says whether it is
 //! complete, wants a look or misses something, by a shape and a word.
 
+mod axis;
 mod beam;
 mod card;
 mod crystal;
@@ -11,6 +12,7 @@ mod targets;
 mod wishes;
 
 use egui::{ScrollArea, Ui};
+use ringwright_core::crystal::UnitCell;
 use ringwright_core::instrument::Instrument;
 use ringwright_core::session::{FieldProblem, Session};
 
@@ -63,6 +65,18 @@ impl Bench<'_> {
         let resolved = self.results.resolved.iter();
         resolved.flat_map(|r| &r.notes).filter(|note| note.path.starts_with(path)).map(|n| n.message.clone()).collect()
     }
+}
+
+/// The fields that a problem is about, as paths: of angles that close no cell the three angles, else all at or below its
+/// own path.
+pub fn fields_of(session: &Session, problem: &FieldProblem) -> Vec<String> {
+    let c = session.crystal.cell;
+    let angles = [c.alpha_deg, c.beta_deg, c.gamma_deg].map(|angle| angle.get());
+    let [alpha, beta, gamma] = angles;
+    if problem.path == "crystal.cell" && UnitCell::new(1.0, 1.0, 1.0, alpha, beta, gamma).is_err() {
+        return ["alpha_deg", "beta_deg", "gamma_deg"].map(|angle| format!("crystal.cell.{angle}")).to_vec();
+    }
+    vec![problem.path.clone()]
 }
 
 /// Shows the column.

@@ -2,12 +2,16 @@
 
 use egui::{Align, Button, Label, Layout, ProgressBar, RichText, Ui, vec2};
 
+use ringwright_core::reach::Verdict;
+use ringwright_core::session::Session;
+
 use super::command::Command;
 use super::edits::Edits;
 use super::inputs::{State, mark};
-use super::shared::Results;
+use super::shared::{Reach, Results};
 use super::theme::Tones;
 use super::trust;
+use super::views::Kind;
 
 /// What happened last, and how it went.
 #[derive(Debug, Clone, PartialEq, Eq)]
@@ -27,7 +31,7 @@ pub struct NextStep {
 }
 
 /// Finds it: what is wrong comes first, then what is missing, then what is doubtful, then the way out.
-pub fn next_step(edits: &Edits, results: &Results) -> NextStep {
+pub fn next_step(session: &Session, edits: &Edits, results: &Results) -> NextStep {
     let step = |state, text: String, command| NextStep { state, text, command };
     if let Some((_, label, error)) = edits.first_refused() {
         return step(State::Missing, format!("Put right {label}: {error}"), None);
@@ -36,6 +40,9 @@ pub fn next_step(edits: &Edits, results: &Results) -> NextStep {
         let more = results.problems.len() - 1;
         let more = if more > 0 { format!(" (and {more} more)") } else { String::new() };
         return step(State::Missing, format!("Put right: {}{more}", problem.message), None);
+    }
+    if let Some(text) = results.orient_error.as_ref().and_then(|_| peaks_wanted(session)) {
+        return step(State::Missing, text.to_owned(), Some(Command::AddPeak));
     }
     let errors = [&results.orient_error, &results.reach_error, &results.plan_error];
     if let Some(error) = errors.into_iter().flatten().next() {
@@ -60,11 +67,7 @@ pub fn next_step(edits: &Edits, results: &Results) -> NextStep {
         return step(state, trust::signs(&format!("{text}{mend}")), None);
     }
     match results.current_plan() {
-        Some(plan) if plan.list.rows.is_empty() => step(
-            State::Missing,
-            "No wanted reflection can be measured: widen targets or look at the reasons.".to_owned(),
-            None,
-        ),
+        Some(plan) if plan.list.rows.is_empty() => step(State::Missing, none_reachable(&plan.reach), None),
         Some(plan) => {
             let (rows, time) = (plan.list.rows.len(), duration(plan.list.total_s));
             step(
@@ -75,6 +78,48 @@ pub fn next_step(edits: &Edits, results: &Results) -> NextStep {
         }
         None => step(State::Complete, "Working it out.".to_owned(), None),
     }
+}
+
+/// What peaks are wanted where too few are in use.
+fn peaks_wanted(session: &Session) -> Option<&'static str> {
+    let in_use = session.peaks.iter().filter(|peak| !peak.ignored).count();
+    let waiting = session.peaks.len() > in_use;
+    Some(match (in_use, waiting) {
+        (0, false) => "Put in two found peaks: their indices, and the reading of every axis.",
+        (1, false) => "Put in a second found peak that is not parallel to the first.",
+        (0, true) => "Two peaks give the orientation: tick those that were found, or add others.",
+        (1, true) => "A second peak gives the orientation: tick one that was found, or add another.",
+        _ => return None,
+    })
+}
+
+/// Why no wanted reflection can be measured, and what would change that.
+fn none_reachable(reach: &Reach) -> String {
+    let counts = reach.table.counts();
+    let all = |kind: Kind| counts[kind.index()] == reach.table.len();
+    if reach.table.is_empty() {
+        return "No node lies in the targets: widen the range of d or 2θ.".to_owned();
+    }
+    if all(Kind::OutsideSphere) {
+        let longest = reach.table.rows().filter_map(|row| match row.verdict {
+            Verdict::OutsideSphere { longest_wavelength_angstrom } => Some(longest_wavelength_angstrom),
+            _ => None,
+        });
+        let longest = longest.fold(0.0, f64::max);
+        return format!(
+            "Every wanted reflection lies outside the sphere: shorten the wavelength to {longest:.4} Å, or want larger d."
+        );
+    }
+    let why = if all(Kind::DirectBeam) {
+        "All lie in the direct-beam cone: want larger 2θ, or look at the cone in the card Machine."
+    } else if all(Kind::OverLimit) {
+        "Some axis would pass its limit; the detail names it: look at the limits in the card Machine, or at the rules."
+    } else if all(Kind::CannotMake) {
+        "The axes miss the angles; the detail tells by how much: try another rule, or want others."
+    } else {
+        "The table tells for each what stands in the way: widen the targets, or look at limits and rules."
+    };
+    format!("No wanted reflection can be measured. {why}")
 }
 
 /// Shows the strip.

@@ -2,7 +2,10 @@
 
 mod editing;
 mod files;
+mod layout;
+mod machine;
 mod pictures;
+mod states;
 
 use egui::{Theme, vec2};
 use egui_kittest::kittest::Queryable;
@@ -17,7 +20,7 @@ use super::{App, Command, Options, Start};
 const LAPTOP: [f32; 2] = [1280.0, 800.0];
 
 /// A system without a dialogue that works.
-const NO_DIALOGUE: Options = Options { dialogue: |_, _| None };
+const NO_DIALOGUE: Options = Options { dialogue: |_, _| None, machines: None };
 
 fn window(start: &Start, size: [f32; 2], theme: Theme) -> Harness<'static, App> {
     window_with(start, size, theme, NO_DIALOGUE)

@@ -2,7 +2,7 @@
 
 use ringwright_core::frames::Hkl;
 use ringwright_core::orient::{
-    ChangeKind, Confirmation, DecidingReflection, Doubt, IndexChange, Mend, OrientationReport, Third,
+    ChangeKind, Confirmation, DecidingReflection, Doubt, IndexChange, LaterPeak, Mend, OrientationReport, Third,
 };
 
 /// Why the orientation is not confirmed, as one sentence; nothing if it is.
@@ -83,23 +83,27 @@ pub fn change(change: &IndexChange) -> String {
     format!("{}: then the angle is {:+.3}° off", parts.join(", "), change.fit.angle_deg)
 }
 
-/// The misfits of the first two peaks in one line, each with a sign whether the readings allow it.
+/// The misfits of the first two peaks, and of later ones, each with a sign whether the readings allow it. Of many later
+/// peaks the worst stands for all.
 pub fn misfits(report: &OrientationReport) -> String {
+    const MOST: usize = 4;
     let sign = |agrees: bool| if agrees { "✓" } else { "!" };
     let angle = &report.pair.angle_deg;
-    let mut text = format!("misfits: angle {:+.3}° {}", angle.misfit(), sign(angle.agrees()));
-    for d in &report.pair.d_angstrom {
-        text.push_str(&format!(", d {:+.4} Å {}", d.misfit(), sign(d.agrees())));
+    let mut items = vec![format!("angle {:+.3}° {}", angle.misfit(), sign(angle.agrees()))];
+    for (peak, d) in [&report.pair.first, &report.pair.second].into_iter().zip(&report.pair.d_angstrom) {
+        items.push(format!("d({}) {:+.4} Å {}", peak.hkl, d.misfit(), sign(d.agrees())));
     }
-    for peak in &report.later {
-        text.push_str(&format!(
-            ", {} off {:.3}° {}",
-            peak.observation.hkl,
-            peak.direction_deg.observed,
-            sign(peak.agrees())
-        ));
+    let off = |peak: &LaterPeak| {
+        format!("{} off {:.3}° {}", peak.observation.hkl, peak.direction_deg.observed, sign(peak.agrees()))
+    };
+    let worst = report.later.iter().max_by(|a, b| a.direction_deg.observed.total_cmp(&b.direction_deg.observed));
+    match worst.filter(|_| report.later.len() > MOST) {
+        None => items.extend(report.later.iter().map(off)),
+        Some(worst) => items.push(format!("{} later peaks, worst {}", report.later.len(), off(worst))),
     }
-    signs(&text)
+    // A line ends between two misfits, never inside one.
+    let items: Vec<String> = items.into_iter().map(|item| item.replace(' ', "\u{a0}")).collect();
+    signs(&format!("Misfits: {}", items.join("; ")))
 }
 
 /// The same text with minus signs that can be seen.

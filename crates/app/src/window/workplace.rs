@@ -1,18 +1,18 @@
 //! The layout: inputs at the left as a thread of cards, the lattice above the table in the middle, the selected reflection
 //! at the right, the next step below.
 
-use egui::{CentralPanel, Frame, Margin, MenuBar, Panel, RichText, ScrollArea, Stroke, ThemePreference, Ui, vec2};
+use egui::{CentralPanel, Frame, Margin, MenuBar, Panel, RichText, ScrollArea, Stroke, ThemePreference, Ui};
 
 use ringwright_core::session::DEMOS;
 
 use super::App;
+use super::band;
 use super::command::Command;
 use super::edits::{Edits, Field};
 use super::inputs::{self, Bench};
 use super::shared::{Picked, Results};
 use super::strip;
 use super::theme::{GAP, Tones};
-use super::trust;
 use super::views::{LatticeView, PickedSettings, ReflectionTable, ShownKinds, axis_dials};
 
 /// What the views keep from frame to frame.
@@ -109,7 +109,7 @@ impl App {
     fn bottom(&mut self, ui: &mut Ui, commands: &mut Vec<Command>) {
         let frame = bar(ui, 6);
         Panel::bottom("next").frame(frame).show(ui, |ui| {
-            let next = strip::next_step(&self.edits, &self.results);
+            let next = strip::next_step(&self.opened.session, &self.edits, &self.results);
             strip::show(ui, &next, &self.results, self.message.as_ref(), commands);
         });
         if self.files.bar_is_open() {
@@ -135,6 +135,11 @@ impl App {
         Panel::left("inputs").exact_size(INPUTS_WIDTH).resizable(false).frame(frame).show(ui, |ui| {
             let Self { opened, edits, results, instrument, machines, .. } = self;
             let instrument = instrument.as_ref();
+            let misfits = results.problems.iter().flat_map(|problem| {
+                let fields = inputs::fields_of(&opened.session, problem);
+                fields.into_iter().map(|field| (field, problem.message.clone()))
+            });
+            edits.mark(misfits);
             let mut bench = Bench { session: &mut opened.session, edits, results, instrument, machines, commands };
             inputs::show(ui, &mut bench);
         });
@@ -145,8 +150,11 @@ impl App {
         Panel::right("reflection").exact_size(DETAIL_WIDTH).resizable(false).frame(frame).show(ui, |ui| {
             ScrollArea::vertical().auto_shrink(false).show(ui, |ui| {
                 let Self { edits, results, picked, views, .. } = self;
-                ui.label(RichText::new("This reflection").color(Tones::in_ui(ui).quiet));
-                chooser(ui, edits, results, picked);
+                ui.horizontal(|ui| {
+                    ui.label(RichText::new("This reflection").color(Tones::in_ui(ui).quiet));
+                    chooser(ui, edits, results, picked);
+                });
+                edits.show_errors(ui, "reflection", &[]);
                 axis_dials(ui, results, picked, &mut views.settings);
                 if let Some(hkl) = picked.hkl.filter(|_| views.settings.shown_setting().is_some()) {
                     ui.add_space(GAP);
@@ -165,8 +173,8 @@ impl App {
         let table = Frame::new().fill(tones.card).inner_margin(Margin::symmetric(8, 6));
         let Self { results, picked, views, .. } = self;
         picked.hovered = None;
-        let ground = Frame::new().fill(tones.card).inner_margin(Margin::symmetric(10, 3));
-        Panel::top("trust").frame(ground).show(ui, |ui| trust_line(ui, results));
+        let ground = Frame::new().fill(tones.card).inner_margin(Margin::symmetric(10, 5));
+        Panel::top("trust").frame(ground).show(ui, |ui| band::show(ui, results));
         let height = ui.available_height();
         Panel::bottom("table")
             .default_size(height * 0.42)
@@ -184,22 +192,6 @@ impl App {
     }
 }
 
-/// How far the orientation can be trusted, always in sight: its state, and the misfits of its peaks.
-fn trust_line(ui: &mut Ui, results: &Results) {
-    let tones = Tones::in_ui(ui);
-    let (state, words) = inputs::trust(results);
-    ui.horizontal(|ui| {
-        let (rect, _) = ui.allocate_exact_size(vec2(16.0, 18.0), egui::Sense::hover());
-        inputs::mark(ui.painter(), rect.center(), state, tones);
-        ui.label(RichText::new(format!("Orientation {words}")).color(tones.strong));
-        if results.reach_is_stale && results.busy.is_none() && results.reach.is_some() {
-            ui.label(RichText::new("! what is shown below follows from earlier inputs").color(tones.doubt));
-        } else if let Some(report) = results.oriented.as_ref().and_then(|oriented| oriented.report.as_ref()) {
-            ui.add(egui::Label::new(RichText::new(trust::misfits(report)).color(tones.quiet)).truncate());
-        }
-    });
-}
-
 /// A field to select any reflection by its indices, wanted or not.
 fn chooser(ui: &mut Ui, edits: &mut Edits, results: &Results, picked: &mut Picked) {
     if results.reach.is_none() {
@@ -211,7 +203,6 @@ fn chooser(ui: &mut Ui, edits: &mut Edits, results: &Results, picked: &mut Picke
     if let Some(hkl) = edits.field(ui, &field, &shown, inputs::read_hkl) {
         picked.hkl = Some(hkl);
     }
-    edits.show_errors(ui, "reflection", &[]);
 }
 
 fn press(ui: &mut Ui, command: Command, commands: &mut Vec<Command>) {

@@ -33,7 +33,7 @@ pub fn demo(args: &DemoArgs, desktop: &mut Desktop<'_, '_>) -> Result<Outcome, F
     if status != DONE || args.headless {
         return Ok(Outcome::Finished(status));
     }
-    Ok(Outcome::OpenWindow { on: Start::Demo(demo), without_display: DONE })
+    Ok(Outcome::OpenWindow { on: Start::Demo(demo), machines: None, without_display: DONE })
 }
 
 /// The whole job: every part is made as its verb makes it, and the list is proven from the text that was written.

@@ -1,4 +1,4 @@
-use std::path::PathBuf;
+use std::path::{Path, PathBuf};
 
 use ringwright_core::orient::{Confirmation, Doubt};
 use ringwright_core::session::{FieldProblem, OpenedSession, Resolved};
@@ -17,10 +17,7 @@ pub struct Night {
 impl Night {
     /// Opens the session of a command line.
     pub fn open(args: &SessionArgs) -> Result<Self, Failure> {
-        if let Some(folder) = args.machines.as_ref().filter(|folder| !folder.is_dir()) {
-            let folder = folder.display();
-            return Err(Failure::new(format_args!("--machines {folder}: there is no such folder")));
-        }
+        check_folder(args.machines.as_deref())?;
         let opened = OpenedSession::open(&args.session).map_err(Failure::new)?;
         Self::of(opened, args.machines.clone())
     }
@@ -69,6 +66,14 @@ impl Night {
         };
         let placed = self.opened.place(&[FieldProblem { path: path.to_owned(), message }]);
         Failure::new(placed.iter().map(ToString::to_string).collect::<Vec<_>>().join("\n"))
+    }
+}
+
+/// A folder of machines that was given must be there.
+pub fn check_folder(machines: Option<&Path>) -> Result<(), Failure> {
+    match machines.filter(|folder| !folder.is_dir()) {
+        Some(folder) => Err(Failure::new(format_args!("--machines {}: there is no such folder", folder.display()))),
+        None => Ok(()),
     }
 }
 

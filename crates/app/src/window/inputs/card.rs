@@ -153,8 +153,7 @@ pub fn row_name(ui: &mut Ui, text: &str) -> egui::Response {
     let quiet = Tones::in_ui(ui).quiet;
     let (rect, _) = ui.allocate_exact_size(vec2(78.0, ui.spacing().interact_size.y), Sense::hover());
     let label = Label::new(RichText::new(text).color(quiet)).selectable(false);
-    ui.scope_builder(egui::UiBuilder::new().max_rect(rect).layout(Layout::left_to_right(Align::Center)), |ui| {
-        ui.add(label)
-    })
-    .inner
+    // A child that does not move the cursor, so that whatever follows begins after the whole column.
+    let place = egui::UiBuilder::new().max_rect(rect).layout(Layout::left_to_right(Align::Center));
+    ui.new_child(place).add(label)
 }

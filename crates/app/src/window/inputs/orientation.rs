@@ -21,7 +21,11 @@ pub fn show(ui: &mut Ui, bench: &mut Bench<'_>) {
             remark(ui, "Two peaks that are not parallel give U and UB.");
             return;
         };
-        if bench.results.orient_error.is_some() || !bench.results.problems.is_empty() {
+        if bench.results.orient_error.is_some() {
+            remark(ui, "Lattice and table still show the last orientation that the inputs gave.");
+            return;
+        }
+        if !bench.results.problems.is_empty() {
             remark(ui, "Below is the last orientation that the inputs gave.");
         }
         match &oriented.report {

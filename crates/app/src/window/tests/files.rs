@@ -43,7 +43,7 @@ fn a_file_named_in_the_dialogue_is_opened() {
         Some(std::path::PathBuf::from(env!("CARGO_MANIFEST_DIR")).join("../../demo-sessions/kappa-monoclinic.ron"))
     };
     let start = Start::Demo(DEMOS[0].name);
-    let mut harness = window_with(&start, LAPTOP, Theme::Light, Options { dialogue });
+    let mut harness = window_with(&start, LAPTOP, Theme::Light, Options { dialogue, machines: None });
     press(&mut harness, "Open…");
     assert_eq!(*harness.state().session(), DEMOS[1].open().unwrap().session);
     assert!(harness.query_by_label("Path of the session").is_none());
@@ -128,4 +128,19 @@ fn comments_and_changes_are_not_lost_unasked() {
     perform(&mut harness, Command::OpenDemo(1));
     settle(&mut harness);
     assert!(harness.query_by_label("Changes are not saved").is_none());
+}
+
+#[test]
+fn a_machine_of_the_extra_folder_can_be_chosen() {
+    let folder = tempfile::tempdir().unwrap();
+    let text = ringwright_core::instrument::BUILT_IN_MACHINES[1].1.replace("Kappa four-circle, 50°", "Ours");
+    std::fs::write(folder.path().join("ours.ron"), text).unwrap();
+    let options = Options { machines: Some(folder.path().to_owned()), ..NO_DIALOGUE };
+    let mut harness = window_with(&Start::Demo(DEMOS[1].name), LAPTOP, Theme::Light, options);
+    assert!(harness.state().machines.iter().any(|name| name == "ours"));
+    let ours = ringwright_core::session::MachineChoice::Named("ours".to_owned());
+    harness.state_mut().opened.session.machine = ours;
+    settle(&mut harness);
+    assert!(harness.state().results().problems.is_empty());
+    assert_eq!(harness.state().results().resolved.as_ref().unwrap().instrument.name(), "Ours");
 }

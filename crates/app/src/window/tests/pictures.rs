@@ -40,6 +40,33 @@ fn pictures_of_both_demos_are_drawn() {
     }
 }
 
+/// The pictures that the README shows; with `RINGWRIGHT_SHOTS=folder` they are written there under the names that they have in
+/// `assets/pictures`, ready to be copied.
+#[test]
+fn pictures_for_the_readme_are_small_files() {
+    for (i, theme) in [Theme::Light, Theme::Dark].into_iter().enumerate() {
+        let mut harness = window(&Start::Demo(DEMOS[i].name), LAPTOP, theme);
+        let hkl = harness.state().results().current_plan().unwrap().list.rows[2].hkl;
+        perform(&mut harness, Command::Select(hkl));
+        // Long enough to be painted finely.
+        harness.run_steps(20);
+        let image = image::DynamicImage::from(harness.render().unwrap()).into_rgb8();
+        let (width, height) = image.dimensions();
+        let mut bytes = Vec::new();
+        let mut encoder = png::Encoder::new(&mut bytes, width, height);
+        encoder.set_color(png::ColorType::Rgb);
+        encoder.set_depth(png::BitDepth::Eight);
+        encoder.set_compression(png::Compression::Balanced);
+        encoder.set_filter(png::Filter::Adaptive);
+        encoder.write_header().unwrap().write_image_data(image.as_raw()).unwrap();
+        assert!(bytes.len() < 400_000, "{} bytes", bytes.len());
+        if let Some(folder) = std::env::var_os("RINGWRIGHT_SHOTS") {
+            std::fs::create_dir_all(&folder).unwrap();
+            std::fs::write(Path::new(&folder).join(format!("window-{}.png", word(theme))), bytes).unwrap();
+        }
+    }
+}
+
 /// What leads to a state.
 type Act = fn(&mut Harness<'static, App>);
 
@@ -47,7 +74,7 @@ type Act = fn(&mut Harness<'static, App>);
 #[test]
 fn pictures_of_other_states_are_drawn() {
     let folder = std::env::var_os("RINGWRIGHT_SHOTS");
-    let states: [(&str, Act); 6] = [
+    let states: [(&str, Act); 12] = [
         ("refused", |harness| {
             enter(harness, "a, Å", "-3");
             enter(harness, "Peak 1 chi, degrees", "1,5");
@@ -56,6 +83,26 @@ fn pictures_of_other_states_are_drawn() {
             for peak in ["Peak 1 in use", "Peak 2 in use", "Peak 3 in use"] {
                 press(harness, peak);
             }
+        }),
+        ("no-peaks", |harness| {
+            for peak in ["Remove peak 3", "Remove peak 2", "Remove peak 1"] {
+                press(harness, peak);
+            }
+        }),
+        ("machine", |harness| {
+            press(harness, "Fold Crystal");
+            press(harness, "Unfold Machine");
+            press(harness, "Edit axis chi");
+        }),
+        ("cell-misfit", |harness| enter(harness, "beta, degrees", "97.2")),
+        ("wrong-peak", |harness| enter(harness, "Peak 3 chi, degrees", "60")),
+        ("outside-sphere", |harness| {
+            harness.state_mut().opened.session.targets = list(&[[30.0, 0.0, 0.0], [0.0, 25.0, 0.0]]);
+            settle(harness);
+        }),
+        ("none-reachable", |harness| {
+            harness.state_mut().opened.session.targets = list(&[[2.0, 3.0, 2.0], [2.0, 3.0, -2.0]]);
+            settle(harness);
         }),
         ("two-peaks", |harness| press(harness, "Peak 3 in use")),
         ("does-not-fit", |harness| {
@@ -84,6 +131,12 @@ fn pictures_of_other_states_are_drawn() {
             image.save(Path::new(folder).join(format!("state-{name}.png"))).unwrap();
         }
     }
+}
+
+fn list(nodes: &[[f64; 3]]) -> ringwright_core::session::Targets {
+    let index = |v: f64| ringwright_core::quantity::Index::new(v).unwrap();
+    let node = |[h, k, l]: &[f64; 3]| ringwright_core::session::TargetNode { h: index(*h), k: index(*k), l: index(*l) };
+    ringwright_core::session::Targets::List(nodes.iter().map(node).collect())
 }
 
 /// Whatever the sources of window and core can say has a glyph; only comments are left out.

@@ -9,7 +9,7 @@ use super::super::number::fixed;
 use super::super::palette::{Kind, Palette};
 
 /// Size of one gauge in points.
-const SIZE: egui::Vec2 = vec2(124.0, 158.0);
+const SIZE: egui::Vec2 = vec2(124.0, 148.0);
 const RADIUS: f32 = 40.0;
 const TRACK: f32 = 7.0;
 /// A travel of more than a turn is drawn as a spiral that widens by this much each turn.

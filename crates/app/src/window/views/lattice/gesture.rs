@@ -7,8 +7,10 @@ pub(super) enum Gesture {
     Nothing,
     /// The eye moved.
     Moved,
-    /// The view shall go back to where it started.
-    Reset,
+    /// The view shall be fitted to the nodes.
+    FitNodes,
+    /// The view shall be fitted to the whole sphere.
+    FitSphere,
 }
 
 /// Radians of orbit for a drag of one point.
@@ -19,10 +21,10 @@ const ORBIT_PER_KEY: f64 = 0.087;
 const ZOOM_PER_POINT: f64 = 0.0022;
 
 /// Drag orbits; with shift, or with the right or middle button, it moves the picture; the wheel and a pinch zoom to the
-/// pointer; a double click resets. With the keyboard: arrows orbit, + and − zoom, Home resets.
+/// pointer; a double click fits the nodes. With the keyboard: arrows orbit, + and − zoom, Home fits the nodes, End the sphere.
 pub(super) fn steer(ui: &Ui, response: &Response, eye: &mut Eye, size_px: [usize; 2]) -> Gesture {
     if response.double_clicked() {
-        return Gesture::Reset;
+        return Gesture::FitNodes;
     }
     let before = *eye;
     let scale = f64::from(ui.pixels_per_point());
@@ -45,14 +47,16 @@ pub(super) fn steer(ui: &Ui, response: &Response, eye: &mut Eye, size_px: [usize
             eye.zoom_at(factor, f64::from(at.x), f64::from(at.y), size_px[0], size_px[1]);
         }
     }
-    if response.has_focus() && keys(ui, response, eye) {
-        return Gesture::Reset;
+    if response.has_focus()
+        && let Some(fit) = keys(ui, response, eye)
+    {
+        return fit;
     }
     if *eye == before { Gesture::Nothing } else { Gesture::Moved }
 }
 
-/// Answers whether the view shall be reset.
-fn keys(ui: &Ui, response: &Response, eye: &mut Eye) -> bool {
+/// Answers what the view shall be fitted to, if a key asks for it.
+fn keys(ui: &Ui, response: &Response, eye: &mut Eye) -> Option<Gesture> {
     let filter = EventFilter { horizontal_arrows: true, vertical_arrows: true, ..EventFilter::default() };
     ui.memory_mut(|memory| memory.set_focus_lock_filter(response.id, filter));
     let events = ui.input(|input| input.filtered_events(&filter));
@@ -67,9 +71,10 @@ fn keys(ui: &Ui, response: &Response, eye: &mut Eye) -> bool {
             Key::ArrowDown => eye.orbit(0.0, ORBIT_PER_KEY),
             Key::Plus | Key::Equals => eye.zoom(1.0 / 1.2),
             Key::Minus => eye.zoom(1.2),
-            Key::Home => return true,
+            Key::Home => return Some(Gesture::FitNodes),
+            Key::End => return Some(Gesture::FitSphere),
             _ => {}
         }
     }
-    false
+    None
 }

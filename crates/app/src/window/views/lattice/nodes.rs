@@ -41,6 +41,11 @@ impl Nodes {
         Arc::ptr_eq(&self.reach, reach)
     }
 
+    /// The radius in Å⁻¹ of a ball about the origin that holds every node, and the next ones where there are few.
+    pub fn extent(&self) -> f64 {
+        self.largest.max(1.5 * self.spacing)
+    }
+
     /// The centre and radius, in the lab frame, of a ball that holds every node and the Ewald sphere.
     pub fn bounds(&self) -> ([f64; 3], f64) {
         let k = 1.0 / self.reach.wavelength_angstrom;

@@ -9,7 +9,7 @@ use super::super::super::Reach;
 use super::super::number::{fixed, indices};
 use super::super::palette::{Kind, Palette, mark_place, paint_mark};
 use super::label::Labels;
-use super::scene::Vectors;
+use super::scene::{Named, Vectors};
 
 /// The projection in points of the window.
 #[derive(Clone, Copy)]
@@ -24,6 +24,17 @@ impl OnScreen {
         let seen = self.view.project(point)?;
         Some(self.rect.min + vec2(seen.x as f32, seen.y as f32) / self.scale)
     }
+
+    /// Points along a vector, from tail to tip, as far as they lie in the picture: an arrow may begin outside or behind the
+    /// eye.
+    pub fn in_sight(&self, [from, to]: [[f64; 3]; 2]) -> Vec<Pos2> {
+        const STEPS: usize = 64;
+        let point = |step: usize| {
+            let part = step as f64 / STEPS as f64;
+            self.at(std::array::from_fn(|i| from[i] + part * (to[i] - from[i])))
+        };
+        (0..=STEPS).filter_map(point).filter(|at| self.rect.contains(*at)).collect()
+    }
 }
 
 pub(super) fn draw(ui: &Ui, screen: &OnScreen, of: &Vectors, picked: Option<Hkl>, hovered: Option<Hkl>) {
@@ -34,11 +45,24 @@ pub(super) fn draw(ui: &Ui, screen: &OnScreen, of: &Vectors, picked: Option<Hkl>
     }
     through(&painter, screen, of, palette);
     let mut labels = Labels::new(&painter, TextStyle::Body.resolve(ui.style()), palette.background);
+    // The caption stands there.
+    labels.reserve(Rect::from_min_max(pos2(screen.rect.left(), screen.rect.bottom() - 24.0), screen.rect.max));
+    let origin = screen.at([0.0; 3]);
+    if let Some(at) = origin {
+        painter.circle(at, 3.5, palette.background, Stroke::new(2.0, palette.beam));
+        labels.reserve(Rect::from_center_size(at, Vec2::splat(14.0)));
+    }
+    // Labels keep off the arrows, not only off each other.
+    for (_, ends) in of.arrows() {
+        if let [first, .., last] = screen.in_sight(ends).as_slice() {
+            labels.keep_off([*first, *last]);
+        }
+    }
     if let (Some(hkl), Some(at)) = (picked, of.node.and_then(|node| screen.at(node))) {
         painter.circle_stroke(at, 10.0, Stroke::new(4.0, palette.background));
         painter.circle_stroke(at, 10.0, Stroke::new(2.0, palette.selected));
         labels.reserve(Rect::from_center_size(at, Vec2::splat(20.0)));
-        let away = screen.at([0.0; 3]).map_or(Vec2::ZERO, |origin| at - origin);
+        let away = origin.map_or(Vec2::ZERO, |origin| at - origin);
         labels.put(at + away.normalized() * 8.0, away, &indices(hkl, 0), "", palette.selected);
     }
     vector_labels(&mut labels, screen, of, palette);
@@ -47,43 +71,30 @@ pub(super) fn draw(ui: &Ui, screen: &OnScreen, of: &Vectors, picked: Option<Hkl>
 /// The vectors again as broken lines over everything, so that they are seen where nodes hide them.
 fn through(painter: &egui::Painter, screen: &OnScreen, of: &Vectors, palette: &Palette) {
     let beam = palette.beam.gamma_multiply(0.8);
-    let broken = |from: [f64; 3], to: [f64; 3], tint: egui::Color32| {
-        if let (Some(from), Some(to)) = (screen.at(from), screen.at(to)) {
-            painter.extend(egui::Shape::dashed_line(&[from, to], Stroke::new(1.5, tint), 5.0, 4.0));
+    for (name, ends) in of.arrows() {
+        let tint = if name == Named::Q { palette.q.gamma_multiply(0.9) } else { beam };
+        if let [first, .., last] = screen.in_sight(ends).as_slice() {
+            painter.extend(egui::Shape::dashed_line(&[*first, *last], Stroke::new(1.5, tint), 5.0, 4.0));
         }
-    };
-    broken(of.centre, [0.0; 3], beam);
-    if let Some(tip) = of.k_f_tip {
-        broken(of.centre, tip, beam);
-    }
-    if let Some(node) = of.node {
-        broken([0.0; 3], node, palette.q.gamma_multiply(0.9));
     }
 }
 
 fn vector_labels(labels: &mut Labels<'_>, screen: &OnScreen, of: &Vectors, palette: &Palette) {
-    let middle = |from: [f64; 3], to: [f64; 3]| {
-        let at = screen.at(std::array::from_fn(|i| from[i] + 0.55 * (to[i] - from[i])))?;
-        // Across the arrow, on the upper side.
-        let along = screen.at(to)? - screen.at(from)?;
-        let across = if along.x > 0.0 { vec2(along.y, -along.x) } else { vec2(-along.y, along.x) };
-        Some((at, across))
-    };
-    if let Some((at, away)) = middle(of.centre, [0.0; 3]) {
-        labels.put(at, away, "k", "i", palette.beam);
+    for (name, ends) in of.arrows() {
+        let (letter, subscript, colour) = match name {
+            Named::Ki => ("k", "i", palette.beam),
+            Named::Kf => ("k", "f", palette.beam),
+            Named::Q => ("Q", "", palette.q),
+        };
+        labels.put_along(&screen.in_sight(ends), letter, subscript, colour);
     }
-    if let Some((at, away)) = of.k_f_tip.and_then(|tip| middle(of.centre, tip)) {
-        labels.put(at, away, "k", "f", palette.beam);
-    }
-    if let Some((at, away)) = of.node.and_then(|node| middle([0.0; 3], node)) {
-        labels.put(at, away, "Q", "", palette.q);
-    }
-    let origin = screen.at([0.0; 3]);
+    let Some(origin) = screen.at([0.0; 3]) else { return };
     for (end, name) in of.axis_ends.into_iter().zip(["a*", "b*", "c*"]) {
-        if let (Some(at), Some(origin)) = (screen.at(end), origin) {
+        if let Some(at) = screen.at(end) {
             labels.put(at, at - origin, name, "", palette.axis);
         }
     }
+    labels.put(origin, vec2(0.3, 1.0), "0 0 0", "", palette.axis);
 }
 
 /// Where the beam goes, the caption of the picture.

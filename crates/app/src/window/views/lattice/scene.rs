@@ -35,10 +35,32 @@ pub(super) struct Vectors {
     pub place: Place,
 }
 
-/// The node's radius, as a part of the shortest reciprocal axis: rows stay apart, planes are seen.
-const NODE_PART: f64 = 0.13;
-/// No node is larger than this part of the picture's ball.
-const NODE_AT_MOST: f64 = 0.012;
+/// An arrow of the picture.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub(super) enum Named {
+    /// The incident beam.
+    Ki,
+    /// The diffracted beam.
+    Kf,
+    /// The scattering vector.
+    Q,
+}
+
+impl Vectors {
+    /// Tail and tip of each arrow: k_i, then k_f and Q where there is a selection.
+    pub fn arrows(&self) -> impl Iterator<Item = (Named, [[f64; 3]; 2])> {
+        let k_f = self.k_f_tip.map(|tip| (Named::Kf, [self.centre, tip]));
+        let q = self.node.map(|node| (Named::Q, [[0.0; 3], node]));
+        [(Named::Ki, [self.centre, [0.0; 3]])].into_iter().chain(k_f).chain(q)
+    }
+}
+
+/// The node's radius as a part of the shortest reciprocal axis: never so large that nodes of a row touch.
+const NODE_PART: f64 = 0.24;
+/// The node's radius as a part of the ball of nodes, where there is room.
+const NODE_AT_MOST: f64 = 0.017;
+/// Length of the crystal axes, in radii of the ball of nodes.
+const AXIS_PART: f64 = 1.12;
 /// Absent nodes are drawn smaller by this factor.
 const ABSENT_PART: f64 = 0.55;
 
@@ -47,21 +69,20 @@ pub(super) fn vectors(nodes: &Nodes, look: &Look) -> Vectors {
     let k = 1.0 / reach.wavelength_angstrom;
     let centre = [0.0, 0.0, -k];
     let place = nodes.place(&look.setting);
-    let (_, radius) = nodes.bounds();
     let k_f_tip = look.at_reflection.then(|| {
         let k_f = *reach.instrument.diffracted_direction(&look.setting).raw() * k;
         [k_f.x, k_f.y, k_f.z - k]
     });
     let axis_ends = place.0.map(|axis| {
         let length = axis.iter().map(|v| v * v).sum::<f64>().sqrt();
-        axis.map(|v| v * (1.04 * nodes.largest.max(0.4 * radius)) / length)
+        axis.map(|v| v * AXIS_PART * nodes.extent() / length)
     });
     Vectors { centre, k_f_tip, node: look.picked.map(|hkl| place.of(hkl)), axis_ends, place }
 }
 
 pub(super) fn build(nodes: &Nodes, look: &Look, scene: &mut Scene) {
     let palette = Palette::of(look.dark);
-    let (_, radius) = nodes.bounds();
+    let radius = nodes.extent();
     let of = vectors(nodes, look);
     scene.background = colour(palette.background);
     scene.fade = Some(Fade { radius, most: 0.62 });
@@ -75,7 +96,9 @@ pub(super) fn build(nodes: &Nodes, look: &Look, scene: &mut Scene) {
 
 fn add_nodes(nodes: &Nodes, look: &Look, place: &Place, radius: f64, discs: &mut Vec<Disc>) {
     let palette = Palette::of(look.dark);
-    let size = (NODE_PART * nodes.spacing).min(NODE_AT_MOST * radius);
+    // Few nodes that stand far apart, as in a list, are as large as those of a short cell.
+    let apart = nodes.spacing.max(0.8 * radius / (nodes.list.len().max(1) as f64).cbrt());
+    let size = (NODE_PART * apart).min(NODE_AT_MOST * radius);
     discs.clear();
     discs.reserve(nodes.list.len());
     for (row, node) in (0..).zip(&nodes.list) {
@@ -127,12 +150,11 @@ fn add_vectors(look: &Look, of: &Vectors, palette: &Palette, scene: &mut Scene) 
         let (width_px, head_px) = (f64::from(width * look.scale), f64::from(width * 4.2 * look.scale));
         Arrow { from, to, width_px, head_px, colour: colour(tint), id: NO_ID }
     };
-    scene.arrows.push(arrow(of.centre, [0.0; 3], 2.6, palette.beam));
-    if let Some(tip) = of.k_f_tip {
-        scene.arrows.push(arrow(of.centre, tip, 2.6, palette.beam));
-    }
-    if let Some(node) = of.node {
-        scene.arrows.push(arrow([0.0; 3], node, 3.0, palette.q));
+    for (name, [from, to]) in of.arrows() {
+        scene.arrows.push(match name {
+            Named::Ki | Named::Kf => arrow(from, to, 2.6, palette.beam),
+            Named::Q => arrow(from, to, 3.0, palette.q),
+        });
     }
 }
 

@@ -24,20 +24,34 @@ pub struct ViewOptions {
     pub parallel: bool,
 }
 
+/// What the picture is fitted to, whatever its size.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Default)]
+enum Framing {
+    /// The nodes; most of the sphere may lie outside.
+    #[default]
+    Nodes,
+    /// The nodes and the whole Ewald sphere.
+    Sphere,
+    /// Nothing any more: the eye was moved by hand.
+    ByHand,
+}
+
 /// The reciprocal lattice with the Ewald sphere.
 #[derive(Default)]
 pub struct LatticeView {
     /// What is shown besides the nodes.
     pub options: ViewOptions,
     eye: Eye,
-    /// Whether the eye was moved by hand; until then the picture is fitted to what it shows.
-    steered: bool,
+    framing: Framing,
     nodes: Option<Nodes>,
     picture: Picture,
 }
 
 /// How far from a node a click still means it, in points.
 const PICK_REACH: f32 = 5.0;
+
+/// The part of the picture's smaller side that the ball of nodes fills.
+const FILLED: f64 = 0.82;
 
 impl LatticeView {
     /// Shows picture, legend and options in the space that is left. A click on a node selects it.
@@ -57,11 +71,6 @@ impl LatticeView {
         let rect = ui.available_rect_before_wrap().intersect(whole);
         self.show_picture(ui, rect, results, picked, settings, *shown);
         ui.advance_cursor_after_rect(rect);
-    }
-
-    /// Goes back to the eye that shows everything.
-    pub fn reset(&mut self) {
-        self.steered = false;
     }
 
     /// The eye, for tests that project points themselves.
@@ -85,9 +94,12 @@ impl LatticeView {
             ui.checkbox(&mut self.options.parallel, "parallel view")
                 .on_hover_text("Without perspective: rows of nodes stay parallel.");
             let help = "Drag to turn, drag with shift or the right button to move, scroll to zoom, click a node to select it. \
-                        Double click: the whole lattice. With the keyboard: arrows, + and −, Home.";
-            if ui.button("Reset view").on_hover_text(help).clicked() {
-                self.reset();
+                        With the keyboard: arrows, + and −.";
+            if ui.button("Fit nodes").on_hover_text(format!("{help}\nThis: a double click, or Home.")).clicked() {
+                self.framing = Framing::Nodes;
+            }
+            if ui.button("Whole sphere").on_hover_text(format!("{help}\nThis: End.")).clicked() {
+                self.framing = Framing::Sphere;
             }
         });
     }
@@ -123,11 +135,12 @@ impl LatticeView {
         self.eye.lens = if self.options.parallel { Lens::Orthographic } else { Lens::Perspective };
         match steer(ui, &response, &mut self.eye, size_px) {
             Gesture::Nothing => {}
-            Gesture::Moved => self.steered = true,
-            Gesture::Reset => self.steered = false,
+            Gesture::Moved => self.framing = Framing::ByHand,
+            Gesture::FitNodes => self.framing = Framing::Nodes,
+            Gesture::FitSphere => self.framing = Framing::Sphere,
         }
-        if !self.steered {
-            self.eye = start(nodes, self.eye.lens, size_px);
+        if self.framing != Framing::ByHand {
+            self.eye = start(nodes, self.framing, self.eye.lens, size_px);
         }
         let look = look(ui, reach, picked, settings, shown, self.options);
         self.picture.update(ui.ctx(), nodes, &look, &self.eye, size_px);
@@ -173,11 +186,14 @@ impl LatticeView {
     }
 }
 
-/// The eye that shows everything: a little from above, with the beam going to the right and into the picture.
-fn start(nodes: &Nodes, lens: Lens, size_px: [usize; 2]) -> Eye {
+/// The eye to begin with: a little from above, with the beam going to the right and into the picture.
+fn start(nodes: &Nodes, framing: Framing, lens: Lens, size_px: [usize; 2]) -> Eye {
     let mut eye = Eye::default();
     eye.lens = lens;
-    let (centre, radius) = nodes.bounds();
+    let (centre, radius) = match framing {
+        Framing::Nodes => ([0.0; 3], nodes.extent() / FILLED),
+        Framing::Sphere | Framing::ByHand => nodes.bounds(),
+    };
     // Both are fixed directions and a positive radius: neither can be refused.
     let _ = eye.look_along([0.80, -0.38, 0.46], [0.0, 1.0, 0.0]);
     let _ = eye.fit(centre, radius, size_px[0], size_px[1]);

@@ -57,7 +57,7 @@ fn rows_of(reach: &Reach, question: &Question) -> Vec<u32> {
                 && question.d_most.is_none_or(|most| row.d_angstrom <= most)
                 && question.filter.accepts(row)
         })
-        .map(|(i, row)| (column.map_or([0.0; 3], |column| column.sort_key(&row)), i))
+        .map(|(i, row)| (column.map_or([0.0; 3], |column| column.sort_key(&row, reach)), i))
         .collect();
     if let Some(sorting) = question.sorting {
         keyed.sort_unstable_by(|(a, i), (b, j)| compare(a, b, sorting.descending).then(i.cmp(j)));

@@ -56,7 +56,10 @@ impl ReflectionTable {
         {
             self.orders_made += usize::from(made);
         }
-        self.count_row(ui, reach, shown);
+        if made {
+            ui.ctx().request_repaint();
+        }
+        Self::hidden_row(ui, shown);
         let moved = picked.hkl != self.seen;
         if made || moved {
             self.place = picked.hkl.and_then(|hkl| place_of(hkl, reach, self.order.rows()));
@@ -84,7 +87,7 @@ impl ReflectionTable {
         let [least, most] = self.spread(reach);
         ui.horizontal_wrapped(|ui| {
             let name = ui.label("Filter");
-            let edit = TextEdit::singleline(&mut self.text).hint_text("0 0 *   d 0.8..1.5   reachable").desired_width(260.0);
+            let edit = TextEdit::singleline(&mut self.text).hint_text("0 0 *   d 0.8..1.5   reachable").desired_width(206.0);
             let help = "Conditions that must all hold:\n1 0 2   or   0 0 *   with * for any index\nd 0.8..1.5   2theta < 60   \
                         h = 0   a column and its range\nreachable   over_limit   absent   and \"not\" before any";
             ui.add(edit).labelled_by(name.id).on_hover_text(help);
@@ -95,6 +98,7 @@ impl ReflectionTable {
                 self.text.clear();
                 (self.d_least, self.d_most) = (None, None);
             }
+            self.count(ui, reach);
         });
         match read {
             Ok(filter) => filter,
@@ -118,19 +122,24 @@ impl ReflectionTable {
         spread
     }
 
-    fn count_row(&self, ui: &mut Ui, reach: &Reach, shown: &mut ShownKinds) {
+    /// How many rows are shown: those of the frame before, which is asked for again where it was another number.
+    fn count(&self, ui: &mut Ui, reach: &Reach) {
+        let (some, all) = (self.order.rows().len(), reach.table.len());
+        ui.weak(if some == all {
+            format!("{} reflections", grouped(all))
+        } else {
+            format!("{} of {} reflections", grouped(some), grouped(all))
+        });
+    }
+
+    fn hidden_row(ui: &mut Ui, shown: &mut ShownKinds) {
+        if shown.is_everything() {
+            return;
+        }
         ui.horizontal_wrapped(|ui| {
-            let (some, all) = (self.order.rows().len(), reach.table.len());
-            ui.weak(if some == all {
-                format!("{} reflections", grouped(all))
-            } else {
-                format!("{} of {} reflections", grouped(some), grouped(all))
-            });
-            if !shown.is_everything() {
-                ui.weak("Some verdicts are hidden.");
-                if ui.small_button("Show every verdict").clicked() {
-                    *shown = ShownKinds::default();
-                }
+            ui.weak("Some verdicts are hidden.");
+            if ui.small_button("Show every verdict").clicked() {
+                *shown = ShownKinds::default();
             }
         });
     }
@@ -147,6 +156,11 @@ impl ReflectionTable {
         }
         let columns: Vec<Column> = Column::all(reach.instrument.axis_count()).collect();
         let mut clicked = None;
+        // Where the axes find no room beside it, the detail takes what is left and they lie beyond the edge.
+        let left = area.width() - BEFORE_DETAIL;
+        let detail =
+            if left < DETAIL_WIDTH + 80.0 * reach.instrument.axis_count() as f32 { left } else { DETAIL_WIDTH };
+        let detail = detail.max(150.0);
         ui.push_id("table", |ui| {
             ui.spacing_mut().item_spacing.x = 2.0;
             let mut table = TableBuilder::new(ui)
@@ -156,7 +170,7 @@ impl ReflectionTable {
                 .min_scrolled_height(0.0)
                 .animate_scrolling(false);
             for column in &columns {
-                table = table.column(width(*column));
+                table = table.column(width(*column, detail));
             }
             if let Some(place) = scroll_to {
                 table = table.scroll_to_row(place, None);
@@ -181,6 +195,12 @@ impl ReflectionTable {
                         if answer(&row, place == Some(at), || cell::spoken(&data, reach), &mut picked.hovered, data.hkl)
                         {
                             clicked = Some((at, data.hkl));
+                        }
+                        let response = row.response();
+                        if response.hovered()
+                            && let Some(more) = cell::not_in_sight(&response.ctx, &data, reach, detail)
+                        {
+                            response.on_hover_text(more);
                         }
                     }
                 });
@@ -275,14 +295,21 @@ fn place_of(hkl: Hkl, reach: &Reach, rows: &[u32]) -> Option<usize> {
     rows.iter().position(|row| reach.table.row(*row as usize).is_some_and(|row| row.hkl == hkl))
 }
 
-fn width(column: Column) -> Width {
+/// Widths of the columns before the detail, with the gaps and the scroll bar.
+const BEFORE_DETAIL: f32 = 78.0 + 52.0 + 56.0 + 54.0 + 108.0 + 5.0 * 2.0 + 8.0;
+/// Width of the detail where there is room for everything.
+const DETAIL_WIDTH: f32 = 270.0;
+
+/// Wide enough for what is in it; up to the detail they fit beside each other in the window of a laptop.
+fn width(column: Column, detail: f32) -> Width {
     match column {
-        Column::Hkl => Width::exact(82.0),
-        Column::Spacing | Column::TwoTheta => Width::exact(62.0),
-        Column::Axis(_) => Width::initial(79.0).at_least(70.0),
-        Column::Verdict => Width::exact(106.0),
-        Column::Absent => Width::exact(62.0),
-        Column::Detail => Width::remainder().at_least(220.0).clip(true),
+        Column::Hkl => Width::exact(78.0),
+        Column::Spacing => Width::exact(52.0),
+        Column::TwoTheta => Width::exact(56.0),
+        Column::Absent => Width::exact(54.0),
+        Column::Verdict => Width::exact(108.0),
+        Column::Detail => Width::exact(detail),
+        Column::Axis(_) => Width::initial(80.0).at_least(70.0),
     }
 }
 

@@ -191,3 +191,27 @@ fn without_results_it_says_what_to_do() {
     harness.get_by_label_contains("No orientation yet");
     harness.get_by_label_contains("two found peaks");
 }
+
+/// The largest distance of a node from the origin on the screen, in halves of the picture's smaller side.
+fn filled(harness: &Harness<'_, Workplace>) -> f32 {
+    let (reach, rect) = (harness.state().reach(), picture_rect(harness));
+    let park = reach.instrument.park();
+    let origin = on_screen(harness, Hkl::new(0.0, 0.0, 0.0), &park);
+    let far = reach.table.rows().map(|row| (on_screen(harness, row.hkl, &park) - origin).length());
+    far.fold(0.0, f32::max) / (0.5 * rect.size().min_elem())
+}
+
+#[test]
+fn the_nodes_fill_the_picture_until_the_whole_sphere_is_asked_for() {
+    // Few nodes deep inside a large sphere.
+    let mut harness = view(Some(orthorhombic("eulerian-four-circle", [8.9, 6.3, 11.4], 2.6, 0.5)));
+    assert!((0.7..0.9).contains(&filled(&harness)), "{}", filled(&harness));
+    harness.get_by_label("Whole sphere").click();
+    harness.run();
+    assert!(filled(&harness) < 0.5, "{}", filled(&harness));
+    let centre = harness.state().lattice.eye().view(640, 480).project([0.0, 0.0, -2.0]).unwrap();
+    assert!((0.0..640.0).contains(&centre.x) && (0.0..480.0).contains(&centre.y));
+    harness.get_by_label("Fit nodes").click();
+    harness.run();
+    assert!((0.7..0.9).contains(&filled(&harness)), "{}", filled(&harness));
+}
