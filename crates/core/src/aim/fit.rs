@@ -174,6 +174,9 @@ type Refusal = (&'static str, String);
 
 impl Check<'_> {
     fn rule(&self, rule: &Rule) -> Result<(), Refusal> {
+        if self.earlier.contains(rule) && !matches!(rule, Rule::Hold { .. }) {
+            return Err(("", "this rule stands here twice; accepted is one rule for each spare angle".to_owned()));
+        }
         if rule.needs_surface() {
             return match self.surface {
                 None => Ok(()),

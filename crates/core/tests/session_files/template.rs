@@ -34,6 +34,7 @@ const SESSION: &str = r#"// A night of the invented laboratory; µ and Å take m
         cell: ⟦crystal.cell|(a_angstrom: ⟦crystal.cell.a_angstrom|7.31⟧, b_angstrom: ⟦crystal.cell.b_angstrom|9.2⟧, c_angstrom: ⟦crystal.cell.c_angstrom|11.05⟧,
                alpha_deg: ⟦crystal.cell.alpha_deg|90⟧, beta_deg: ⟦crystal.cell.beta_deg|102.5⟧, gamma_deg: ⟦crystal.cell.gamma_deg|90⟧)⟧,
         symmetry: ⟦crystal.symmetry|SpaceGroup(⟦crystal.symmetry.SpaceGroup|"P 1 21/n 1"⟧)⟧,
+        surface: ⟦crystal.surface|Reciprocal(h: ⟦crystal.surface.Reciprocal.h|0⟧, k: ⟦crystal.surface.Reciprocal.k|0⟧, l: ⟦crystal.surface.Reciprocal.l|1⟧)⟧,
     )⟧,
     radiation: ⟦radiation|XrayLine(name: ⟦radiation.XrayLine.name|"Mo Ka1"⟧)⟧,
     machine: ⟦machine|Inline(⟦machine.Inline|MACHINE⟧)⟧,

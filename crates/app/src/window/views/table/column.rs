@@ -12,7 +12,7 @@ pub(super) fn room(row: &ReachRow, reach: &Reach) -> Option<(AxisName, f64)> {
         let deg = axis.travel.clearance_as_read_deg(*setting.readings_deg().get(i)?);
         Some((axis.name.clone(), deg))
     };
-    let limited = reach.judge.solver().moving_sample_axes().iter().filter_map(of).filter(|(_, deg)| deg.is_finite());
+    let limited = reach.judge.road().moving_sample_axes().iter().filter_map(of).filter(|(_, deg)| deg.is_finite());
     limited.min_by(|(_, a), (_, b)| a.total_cmp(b))
 }
 
