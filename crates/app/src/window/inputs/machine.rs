@@ -96,15 +96,12 @@ fn replace(bench: &mut Bench<'_>, picked: Option<String>) {
 }
 
 fn name(ui: &mut Ui, bench: &mut Bench<'_>, description: &mut MachineDescription) {
-    ui.horizontal(|ui| {
-        row_name(ui, "Name");
-        let (path, width) = (format!("{INLINE}.name"), ui.available_width());
-        let field = Field { path: &path, label: "Name of the machine", width, hint: "what it is called" };
-        let shown = description.name.clone();
-        if let Some(new) = bench.edits.field(ui, &field, &shown, |text| Ok(text.to_owned())) {
-            description.name = new;
-        }
-    });
+    let (path, width) = (format!("{INLINE}.name"), ui.available_width());
+    let field = Field { path: &path, label: "Name of the machine", width, hint: "what the machine is called" };
+    let shown = description.name.clone();
+    if let Some(new) = bench.edits.field(ui, &field, &shown, |text| Ok(text.to_owned())) {
+        description.name = new;
+    }
 }
 
 fn spindle(ui: &mut Ui, description: &mut MachineDescription) {
@@ -131,7 +128,7 @@ fn cone(ui: &mut Ui, bench: &mut Bench<'_>, description: &mut MachineDescription
         row_name(ui, "Beam cone").on_hover_text(help);
         let path = format!("{INLINE}.direct_beam_half_angle_deg");
         let label = "Half angle of the direct-beam cone, degrees";
-        let field = Field { path: &path, label, width: 58.0, hint: "" };
+        let field = Field { path: &path, label, width: 50.0, hint: "" };
         let value = description.direct_beam_half_angle_deg.get();
         if let Some(new) = bench.edits.number(ui, "", &field, (value, 0.1), ConeAngle::new) {
             description.direct_beam_half_angle_deg = new;
