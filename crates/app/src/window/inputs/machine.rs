@@ -11,6 +11,9 @@ use super::{Bench, axis};
 /// Path of a machine that is written out in the session.
 const INLINE: &str = "machine.Inline";
 
+/// The spindle of a machine that names none.
+const INNERMOST: &str = "innermost that moves";
+
 /// The machine: by its name, or written out and open to edits.
 pub fn show(ui: &mut Ui, bench: &mut Bench<'_>) {
     let notes = bench.notes("machine");
@@ -107,18 +110,23 @@ fn name(ui: &mut Ui, bench: &mut Bench<'_>, description: &mut MachineDescription
 fn spindle(ui: &mut Ui, description: &mut MachineDescription) {
     ui.horizontal(|ui| {
         row_name(ui, "Spindle");
-        let shown = description.spindle.as_ref().map_or("innermost that moves", AxisName::as_str).to_owned();
+        let shown = description.spindle.as_ref().map_or(INNERMOST, AxisName::as_str).to_owned();
         let mut picked = None;
         let combo = ComboBox::from_id_salt("spindle").width(150.0).selected_text(shown).show_ui(ui, |ui| {
+            if ui.selectable_label(description.spindle.is_none(), INNERMOST).clicked() {
+                picked = Some(None);
+            }
             for axis in &description.sample_axes {
                 let chosen = description.spindle.as_ref() == Some(&axis.name);
                 if ui.selectable_label(chosen, axis.name.as_str()).clicked() {
-                    picked = Some(axis.name.clone());
+                    picked = Some(Some(axis.name.clone()));
                 }
             }
         });
         super::super::name_combo(ui, &combo.response, "Spindle");
-        description.spindle = picked.or(description.spindle.take());
+        if let Some(picked) = picked {
+            description.spindle = picked;
+        }
     });
 }
 

@@ -2,7 +2,7 @@ use std::path::Path;
 
 use super::*;
 
-/// Every picture: both demos, a laptop's window and a desk's, light and dark.
+/// Every picture: both demos, a laptop's window, a desk's and the least one, light and dark.
 ///
 /// `RINGWRIGHT_SHOTS=folder cargo test --release -p ringwright pictures` writes them as PNG; without the variable only the
 /// first is drawn.
@@ -11,7 +11,7 @@ fn pictures_of_both_demos_are_drawn() {
     let folder = std::env::var_os("RINGWRIGHT_SHOTS");
     let mut wanted = Vec::new();
     for demo in 0..DEMOS.len() {
-        for (size, name) in [(LAPTOP, "laptop"), ([1920.0, 1080.0], "desk")] {
+        for (size, name) in [(LAPTOP, "laptop"), ([1920.0, 1080.0], "desk"), ([1000.0, 640.0], "least")] {
             for theme in [Theme::Light, Theme::Dark] {
                 wanted.push((demo, size, name, theme));
             }
