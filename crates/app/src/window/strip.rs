@@ -41,7 +41,7 @@ pub fn next_step(session: &Session, edits: &Edits, results: &Results) -> NextSte
         let more = if more > 0 { format!(" (and {more} more)") } else { String::new() };
         return step(State::Missing, format!("Put right: {}{more}", problem.message), None);
     }
-    if let Some(text) = results.orient_error.as_ref().and_then(|_| peaks_wanted(session)) {
+    if let Some(text) = results.orient_error.as_ref().and_then(|_| trust::peaks_wanted(session)) {
         return step(State::Missing, text.to_owned(), Some(Command::AddPeak));
     }
     let errors = [&results.orient_error, &results.reach_error, &results.plan_error];
@@ -63,8 +63,7 @@ pub fn next_step(session: &Session, edits: &Edits, results: &Results) -> NextSte
         && let Some(text) = trust::doubt(report)
     {
         let state = if report.pair.agrees() { State::Doubtful } else { State::Missing };
-        let mend = trust::simplest_mend(report).map_or_else(String::new, |mend| format!(" {mend}"));
-        return step(state, trust::signs(&format!("{text}{mend}")), None);
+        return step(state, trust::signs(&format!("{text} {}", trust::advice(report))), None);
     }
     match results.current_plan() {
         Some(plan) if plan.list.rows.is_empty() => step(State::Missing, none_reachable(&plan.reach), None),
@@ -78,19 +77,6 @@ pub fn next_step(session: &Session, edits: &Edits, results: &Results) -> NextSte
         }
         None => step(State::Complete, "Working it out.".to_owned(), None),
     }
-}
-
-/// What peaks are wanted where too few are in use.
-fn peaks_wanted(session: &Session) -> Option<&'static str> {
-    let in_use = session.peaks.iter().filter(|peak| !peak.ignored).count();
-    let waiting = session.peaks.len() > in_use;
-    Some(match (in_use, waiting) {
-        (0, false) => "Put in two found peaks: their indices, and the reading of every axis.",
-        (1, false) => "Put in a second found peak that is not parallel to the first.",
-        (0, true) => "Two peaks give the orientation: tick those that were found, or add others.",
-        (1, true) => "A second peak gives the orientation: tick one that was found, or add another.",
-        _ => return None,
-    })
 }
 
 /// Why no wanted reflection can be measured, and what would change that.

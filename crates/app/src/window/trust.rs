@@ -4,6 +4,7 @@ use ringwright_core::frames::Hkl;
 use ringwright_core::orient::{
     ChangeKind, Confirmation, DecidingReflection, Doubt, IndexChange, LaterPeak, Mend, OrientationReport, Third,
 };
+use ringwright_core::session::Session;
 
 /// Why the orientation is not confirmed, as one sentence; nothing if it is.
 pub fn doubt(report: &OrientationReport) -> Option<String> {
@@ -66,10 +67,21 @@ pub fn none_decides(report: &OrientationReport) -> Option<String> {
     }
 }
 
-/// The simplest change of indices that would mend a misfit, as one sentence.
-pub fn simplest_mend(report: &OrientationReport) -> Option<String> {
-    let Mend::Changes { listed, .. } = &report.mend else { return None };
-    Some(format!("These would fit: {}.", change(listed.first()?)))
+/// What to do about a doubt that no further reflection settles, as one sentence.
+pub fn advice(report: &OrientationReport) -> String {
+    let Confirmation::Unconfirmed { because, .. } = &report.confirmation else { return String::new() };
+    match because {
+        Doubt::PairDisagrees => match &report.mend {
+            Mend::Changes { listed, .. } if !listed.is_empty() => {
+                format!("These would fit: {}.", listed.first().map(change).unwrap_or_default())
+            }
+            _ => "Look at the cell, the wavelength, zero offsets and the readings.".to_owned(),
+        },
+        Doubt::Contradicted(_) => "Look at its indices and readings, or take it out of use.".to_owned(),
+        Doubt::AllInPlane => "Measure one outside that plane.".to_owned(),
+        Doubt::NoThirdPeak | Doubt::NotAllCompared | Doubt::OthersLeft { .. } => none_decides(report)
+            .unwrap_or_else(|| "Measure one more reflection outside the plane of the two.".to_owned()),
+    }
 }
 
 /// A change of indices that would mend a misfit.
@@ -109,4 +121,17 @@ pub fn misfits(report: &OrientationReport) -> String {
 /// The same text with minus signs that can be seen.
 pub fn signs(text: &str) -> String {
     text.replace('-', "\u{2212}")
+}
+
+/// What peaks are wanted where too few are in use.
+pub fn peaks_wanted(session: &Session) -> Option<&'static str> {
+    let in_use = session.peaks.iter().filter(|peak| !peak.ignored).count();
+    let waiting = session.peaks.len() > in_use;
+    Some(match (in_use, waiting) {
+        (0, false) => "Put in two found peaks: their indices, and the reading of every axis.",
+        (1, false) => "Put in a second found peak that is not parallel to the first.",
+        (0, true) => "Two peaks give the orientation: tick those that were found, or add others.",
+        (1, true) => "A second peak gives the orientation: tick one that was found, or add another.",
+        _ => return None,
+    })
 }

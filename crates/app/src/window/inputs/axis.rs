@@ -57,7 +57,7 @@ struct Editor<'a> {
 }
 
 /// Width of a field for one number.
-const WIDTH: f32 = 58.0;
+const WIDTH: f32 = 50.0;
 
 impl Editor<'_> {
     /// A number of the axis: `field` is its name in the file, `words` what it is called, with the unit.
@@ -136,13 +136,17 @@ impl Editor<'_> {
     fn motion(&mut self, ui: &mut Ui) {
         ui.horizontal(|ui| {
             row_name(ui, "Speed");
-            let (speed, pause) = (self.axis.speed_deg_per_s.get(), self.axis.overhead_s.get());
+            let speed = self.axis.speed_deg_per_s.get();
             let named = ("", "speed_deg_per_s", "speed, degrees per second");
             if let Some(new) = self.number(ui, named, (speed, 0.1), Speed::new) {
                 self.axis.speed_deg_per_s = new;
             }
             ui.label("°/s");
-            let named = ("start, stop", "overhead_s", "time to start and stop, s");
+        });
+        ui.horizontal(|ui| {
+            row_name(ui, "Start, stop").on_hover_text("Time to start and to stop, paid once a move.");
+            let pause = self.axis.overhead_s.get();
+            let named = ("", "overhead_s", "time to start and stop, s");
             if let Some(new) = self.number(ui, named, (pause, 0.1), Duration::new) {
                 self.axis.overhead_s = new;
             }

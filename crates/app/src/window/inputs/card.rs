@@ -151,7 +151,7 @@ pub fn doubt(ui: &mut Ui, text: &str) {
 /// The name of a row of fields, in a column of its own.
 pub fn row_name(ui: &mut Ui, text: &str) -> egui::Response {
     let quiet = Tones::in_ui(ui).quiet;
-    let (rect, _) = ui.allocate_exact_size(vec2(78.0, ui.spacing().interact_size.y), Sense::hover());
+    let (rect, _) = ui.allocate_exact_size(vec2(70.0, ui.spacing().interact_size.y), Sense::hover());
     let label = Label::new(RichText::new(text).color(quiet)).selectable(false);
     // A child that does not move the cursor, so that whatever follows begins after the whole column.
     let place = egui::UiBuilder::new().max_rect(rect).layout(Layout::left_to_right(Align::Center));

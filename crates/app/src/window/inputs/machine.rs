@@ -11,6 +11,9 @@ use super::{Bench, axis};
 /// Path of a machine that is written out in the session.
 const INLINE: &str = "machine.Inline";
 
+/// The spindle of a machine that names none.
+const INNERMOST: &str = "innermost that moves";
+
 /// The machine: by its name, or written out and open to edits.
 pub fn show(ui: &mut Ui, bench: &mut Bench<'_>) {
     let notes = bench.notes("machine");
@@ -96,32 +99,34 @@ fn replace(bench: &mut Bench<'_>, picked: Option<String>) {
 }
 
 fn name(ui: &mut Ui, bench: &mut Bench<'_>, description: &mut MachineDescription) {
-    ui.horizontal(|ui| {
-        row_name(ui, "Name");
-        let (path, width) = (format!("{INLINE}.name"), ui.available_width());
-        let field = Field { path: &path, label: "Name of the machine", width, hint: "what it is called" };
-        let shown = description.name.clone();
-        if let Some(new) = bench.edits.field(ui, &field, &shown, |text| Ok(text.to_owned())) {
-            description.name = new;
-        }
-    });
+    let (path, width) = (format!("{INLINE}.name"), ui.available_width());
+    let field = Field { path: &path, label: "Name of the machine", width, hint: "what the machine is called" };
+    let shown = description.name.clone();
+    if let Some(new) = bench.edits.field(ui, &field, &shown, |text| Ok(text.to_owned())) {
+        description.name = new;
+    }
 }
 
 fn spindle(ui: &mut Ui, description: &mut MachineDescription) {
     ui.horizontal(|ui| {
         row_name(ui, "Spindle");
-        let shown = description.spindle.as_ref().map_or("innermost that moves", AxisName::as_str).to_owned();
+        let shown = description.spindle.as_ref().map_or(INNERMOST, AxisName::as_str).to_owned();
         let mut picked = None;
         let combo = ComboBox::from_id_salt("spindle").width(150.0).selected_text(shown).show_ui(ui, |ui| {
+            if ui.selectable_label(description.spindle.is_none(), INNERMOST).clicked() {
+                picked = Some(None);
+            }
             for axis in &description.sample_axes {
                 let chosen = description.spindle.as_ref() == Some(&axis.name);
                 if ui.selectable_label(chosen, axis.name.as_str()).clicked() {
-                    picked = Some(axis.name.clone());
+                    picked = Some(Some(axis.name.clone()));
                 }
             }
         });
         super::super::name_combo(ui, &combo.response, "Spindle");
-        description.spindle = picked.or(description.spindle.take());
+        if let Some(picked) = picked {
+            description.spindle = picked;
+        }
     });
 }
 
@@ -131,7 +136,7 @@ fn cone(ui: &mut Ui, bench: &mut Bench<'_>, description: &mut MachineDescription
         row_name(ui, "Beam cone").on_hover_text(help);
         let path = format!("{INLINE}.direct_beam_half_angle_deg");
         let label = "Half angle of the direct-beam cone, degrees";
-        let field = Field { path: &path, label, width: 58.0, hint: "" };
+        let field = Field { path: &path, label, width: 50.0, hint: "" };
         let value = description.direct_beam_half_angle_deg.get();
         if let Some(new) = bench.edits.number(ui, "", &field, (value, 0.1), ConeAngle::new) {
             description.direct_beam_half_angle_deg = new;

@@ -15,7 +15,7 @@ pub fn show(ui: &mut Ui, bench: &mut Bench<'_>) {
     let summary = words.clone();
     card(ui, "Orientation", (state, words), &summary, |ui| {
         if let Some(error) = &bench.results.orient_error {
-            error_line(ui, error);
+            error_line(ui, trust::peaks_wanted(bench.session).unwrap_or(error));
         }
         let Some(oriented) = &bench.results.oriented else {
             remark(ui, "Two peaks that are not parallel give U and UB.");
@@ -58,7 +58,7 @@ pub fn state(results: &Results) -> (State, String) {
 
 fn figures(ui: &mut Ui, commands: &mut Vec<Command>, report: &OrientationReport) {
     if let Some(text) = trust::doubt(report) {
-        doubt(ui, &text);
+        doubt(ui, &trust::signs(&text));
     }
     if let Some(third) = trust::next(report) {
         remark(ui, &trust::signs(&trust::why(third)));

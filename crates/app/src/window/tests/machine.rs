@@ -83,6 +83,19 @@ fn every_number_of_an_axis_reaches_the_session() {
 }
 
 #[test]
+fn the_fields_of_an_axis_find_room_in_the_column() {
+    let harness = unfolded("chi");
+    // Where the column of inputs ends and the lattice begins; the bar at the top is no part of it.
+    let edge = harness.get_by_label_contains("Reciprocal lattice").rect().left();
+    let in_column = |rect: egui::Rect| rect.left() < edge && rect.top() > 40.0;
+    for field in harness.query_all_by_role(egui::Role::TextInput).filter(|field| in_column(field.rect())) {
+        assert!(field.rect().right() < edge - 6.0, "{:?}: {}", field.accesskit_node().label(), field.rect());
+    }
+    let remove = harness.get_by_label("Remove chi limit 1").rect();
+    assert!(remove.right() < edge - 6.0, "{remove}");
+}
+
+#[test]
 fn travel_and_approach_are_chosen_from_lists() {
     let mut harness = unfolded("phi");
     assert_eq!(axis(&harness, "phi").limits, Limits::Endless);

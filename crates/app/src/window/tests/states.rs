@@ -37,7 +37,7 @@ fn without_enough_peaks_it_asks_for_them() {
 fn a_third_peak_that_contradicts_is_named() {
     let mut harness = demo(0);
     enter(&mut harness, "Peak 3 chi, degrees", "60");
-    next_is(&harness, "Not where this orientation puts it: −3 −1 2");
+    next_is(&harness, "Not where this orientation puts it: −3 −1 2. Look at its indices and readings");
     assert!(harness.query_by_label("Orientation unconfirmed").is_some());
 }
 

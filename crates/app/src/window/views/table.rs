@@ -4,7 +4,9 @@
 mod cell;
 mod column;
 mod filter;
+mod layout;
 mod order;
+mod parts;
 mod view;
 mod words;
 

@@ -1,7 +1,7 @@
 use std::sync::Arc;
 
-use egui::{DragValue, EventFilter, Key, Rect, Response, Role, Sense, TextEdit, Ui, WidgetInfo, pos2, vec2};
-use egui_extras::{Column as Width, TableBuilder, TableRow};
+use egui::{EventFilter, Key, Rect, Response, Role, Sense, TextEdit, Ui, WidgetInfo, pos2};
+use egui_extras::{TableBuilder, TableRow};
 use ringwright_core::frames::Hkl;
 
 use super::super::super::{Picked, Reach, Results};
@@ -10,7 +10,9 @@ use super::super::palette::ShownKinds;
 use super::cell;
 use super::column::Column;
 use super::filter::Filter;
+use super::layout;
 use super::order::{Order, Question, Sorting};
+use super::parts::{arrow, bound, empty};
 
 /// The table of reflections, with its filter and its order.
 #[derive(Debug, Default)]
@@ -156,11 +158,7 @@ impl ReflectionTable {
         }
         let columns: Vec<Column> = Column::all(reach.instrument.axis_count()).collect();
         let mut clicked = None;
-        // Where the axes find no room beside it, the detail takes what is left and they lie beyond the edge.
-        let left = area.width() - BEFORE_DETAIL;
-        let detail =
-            if left < DETAIL_WIDTH + 80.0 * reach.instrument.axis_count() as f32 { left } else { DETAIL_WIDTH };
-        let detail = detail.max(150.0);
+        let detail = layout::detail_width(area.width(), reach.instrument.axis_count());
         ui.push_id("table", |ui| {
             ui.spacing_mut().item_spacing.x = 2.0;
             let mut table = TableBuilder::new(ui)
@@ -170,7 +168,7 @@ impl ReflectionTable {
                 .min_scrolled_height(0.0)
                 .animate_scrolling(false);
             for column in &columns {
-                table = table.column(width(*column, detail));
+                table = table.column(layout::width(*column, detail));
             }
             if let Some(place) = scroll_to {
                 table = table.scroll_to_row(place, None);
@@ -293,47 +291,4 @@ fn answer(
 
 fn place_of(hkl: Hkl, reach: &Reach, rows: &[u32]) -> Option<usize> {
     rows.iter().position(|row| reach.table.row(*row as usize).is_some_and(|row| row.hkl == hkl))
-}
-
-/// Widths of the columns before the detail, with the gaps and the scroll bar.
-const BEFORE_DETAIL: f32 = 78.0 + 52.0 + 56.0 + 54.0 + 108.0 + 5.0 * 2.0 + 8.0;
-/// Width of the detail where there is room for everything.
-const DETAIL_WIDTH: f32 = 270.0;
-
-/// Wide enough for what is in it; up to the detail they fit beside each other in the window of a laptop.
-fn width(column: Column, detail: f32) -> Width {
-    match column {
-        Column::Hkl => Width::exact(78.0),
-        Column::Spacing => Width::exact(52.0),
-        Column::TwoTheta => Width::exact(56.0),
-        Column::Absent => Width::exact(54.0),
-        Column::Verdict => Width::exact(108.0),
-        Column::Detail => Width::exact(detail),
-        Column::Axis(_) => Width::initial(80.0).at_least(70.0),
-    }
-}
-
-/// An optional limit of d: the end of the table's own range means none.
-fn bound(ui: &mut Ui, words: &str, value: &mut Option<f64>, end: f64, range: [f64; 2]) {
-    let name = ui.label(words);
-    let mut number = value.unwrap_or(end);
-    let field = DragValue::new(&mut number).range(range[0]..=range[1]).speed(0.005).max_decimals(3).suffix(" Å");
-    if ui.add(field).labelled_by(name.id).changed() {
-        *value = ((number - end).abs() > 5e-4).then_some(number);
-    }
-}
-
-fn arrow(ui: &Ui, at: egui::Pos2, down: bool, colour: egui::Color32) {
-    let (tip, base) = if down { (3.0, -2.5) } else { (-3.0, 2.5) };
-    let points = vec![at + vec2(0.0, tip), at + vec2(-4.0, base), at + vec2(4.0, base)];
-    ui.painter().add(egui::Shape::convex_polygon(points, colour, egui::Stroke::NONE));
-}
-
-fn empty(ui: &mut Ui, title: &str, next: &str) {
-    ui.vertical_centered(|ui| {
-        ui.add_space(28.0);
-        ui.strong(title);
-        ui.weak(next);
-        ui.add_space(28.0);
-    });
 }
