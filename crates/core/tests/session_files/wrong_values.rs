@@ -123,6 +123,8 @@ const SESSION_TABLE: &[Row] = &[
     ("crystal.surface", "Reciprocal(h: 0, k: 0, l: 0)", "has no direction"),
     ("crystal.surface", "Direct(u: 0, v: ▸\"up\", w: 1)", "is not an index"),
     ("crystal.surface", "Normal(h: 0, k: 0, l: 1)", "accepted are Reciprocal"),
+    ("crystal.surface.Reciprocal.h", "one", "is not an index"),
+    ("crystal.surface.Reciprocal.k", "-1e5", "is not an index"),
     ("crystal.surface.Reciprocal.l", "1e9", "is not an index"),
     ("rules[0]", "BisectingAbout(axis: ▸\"phi\")", "cannot be the reference axis of spindle phi"),
     ("rules[0]", "BisectingAbout(axis: ▸\"mu\")", "accepted is one of omega, chi"),
