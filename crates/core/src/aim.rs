@@ -19,6 +19,7 @@ mod pair;
 mod reference;
 mod road;
 mod rule;
+mod simultaneous;
 mod solver;
 #[cfg(test)]
 #[allow(clippy::unwrap_used)]
@@ -31,4 +32,5 @@ pub use general::NoAzimuth;
 pub use reference::{CrystalOnHead, Reference};
 pub use road::{NoSetting, Road, azimuth_rad};
 pub use rule::{Preference, Rule};
+pub use simultaneous::{Crossing, Turning};
 pub use solver::{OutsideSphere, Solver};

@@ -3,11 +3,13 @@
 //! Each function is pure and says by its arguments what it reads. [`Desk`] keeps the answers, so that only what depends on a
 //! changed input is made again.
 
+mod azimuth;
 mod desk;
 #[cfg(test)]
 #[allow(clippy::unwrap_used)]
 mod tests;
 
+pub use azimuth::{AzimuthView, NEAR_SPHERE, NearNode, RibbonStep, SIMULTANEOUS_D_ANGSTROM};
 pub use desk::Desk;
 
 use nalgebra::Matrix3;

@@ -32,6 +32,8 @@ pub struct AzimuthFamily {
     at_limits: Vec<Road>,
     instrument: Instrument,
     reference: Vector<Head>,
+    /// The rules with the azimuth open.
+    rules: Vec<Rule>,
     grid_deg: f64,
 }
 
@@ -77,6 +79,7 @@ impl AzimuthFamily {
         open[which] = freest;
         let road = Road::new(instrument, &open, Some(crystal))?;
         let direction = reference.in_head(&crystal.ub).ok_or_else(no_family)?;
+        let rules_open = open.clone();
         let mut at_limits = Vec::new();
         let mut complete = road.has_steady_branches();
         for axis in instrument.axes().filter(|axis| !axis.set_by_hand) {
@@ -96,7 +99,17 @@ impl AzimuthFamily {
             }
         }
         let grid_deg = if complete { GRID_DEG } else { FINE_GRID_DEG };
-        Ok(Self { road, at_limits, instrument: instrument.clone(), reference: direction, grid_deg })
+        Ok(Self { road, at_limits, instrument: instrument.clone(), reference: direction, rules: rules_open, grid_deg })
+    }
+
+    /// The rules with *freest* in the place of the one that settled the azimuth.
+    pub fn rules(&self) -> &[Rule] {
+        &self.rules
+    }
+
+    /// What ψ counts from, a unit vector in the head frame.
+    pub fn reference(&self) -> Vector<Head> {
+        self.reference
     }
 
     /// Azimuths in radians at which to look, in order: evenly spread, and to both sides of each exact end.

@@ -136,7 +136,11 @@ const SESSION_TABLE: &[Row] = &[
     ("rules[0]", "Tie(axis: \"omega\", to: ▸\"omega\", factor: 2, offset_deg: 0)", "cannot follow omega"),
     ("rules[0]", "Tie(axis: \"omega\", to: ▸\"mu\", factor: 2, offset_deg: 0)", "has no axis mu"),
     ("rules[0]", "Tie(axis: \"omega\", to: \"two_theta\", factor: ▸0, offset_deg: 0)", "0 ties nothing"),
-    ("rules[0]", "Tie(axis: \"omega\", to: \"two_theta\", factor: 0.5, offset_deg: ▸NaN)", "is not an angle in degrees"),
+    (
+        "rules[0]",
+        "Tie(axis: \"omega\", to: \"two_theta\", factor: 0.5, offset_deg: ▸NaN)",
+        "is not an angle in degrees",
+    ),
     ("rules[0]", "▸DiffractionPlane(turned_deg: 0)", "leaves no choice"),
     ("rules[0]", "Freest(reference: ▸Direct(u: 0, v: 0, w: 0))", "has no direction"),
     ("rules[0]", "Freest(reference: Direct(u: 0, v: 0, w: 1), keep_clear_deg: ▸\"no\")", "is not an angle in degrees"),
