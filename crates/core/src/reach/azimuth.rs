@@ -28,7 +28,7 @@ const END_RAD: f64 = 1e-7;
 #[derive(Debug, Clone)]
 pub struct AzimuthFamily {
     road: Road,
-    /// The same machine with an axis at one of its limits.
+    /// The same machine with an axis at one of its limits, or a beam along the surface.
     at_limits: Vec<Road>,
     instrument: Instrument,
     reference: Vector<Head>,
@@ -92,6 +92,16 @@ impl AzimuthFamily {
             for limit in axis.travel.intervals_deg().flat_map(|(low, high)| [low, high]) {
                 let Ok(at_deg) = Degrees::new(limit) else { continue };
                 open[which] = Rule::Hold { axis: axis.name.clone(), at_deg };
+                match Road::new(instrument, &open, Some(crystal)) {
+                    Ok(road) if road.has_steady_branches() => at_limits.push(road),
+                    _ => complete = false,
+                }
+            }
+        }
+        if crystal.surface.is_some() {
+            let Ok(at_deg) = Degrees::new(0.0) else { return Err(no_family()) };
+            for grazing in [Rule::Incidence { at_deg }, Rule::Exit { at_deg }] {
+                open[which] = grazing;
                 match Road::new(instrument, &open, Some(crystal)) {
                     Ok(road) if road.has_steady_branches() => at_limits.push(road),
                     _ => complete = false,
@@ -315,3 +325,8 @@ fn no_family() -> RuleError {
             .to_owned(),
     )
 }
+
+#[cfg(test)]
+#[path = "azimuth_tests.rs"]
+#[allow(clippy::unwrap_used)]
+mod tests;
