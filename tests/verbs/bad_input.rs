@@ -106,7 +106,7 @@ fn files_that_are_not_there_are_named() {
     let gone = folder.path("gone.ron");
     refused(&["plan".as_ref(), gone.as_os_str()], "gone.ron: cannot be read");
     refused(&[gone.as_os_str()], "gone.ron: there is no such session file, and no such verb");
-    refused(&["paln"], "the verbs are orient, reach, plan, verify and demo");
+    refused(&["paln"], "the verbs are orient, reach, azimuth, plan, verify and demo");
     let session = folder.path("fixed-chi.ron");
     refused(&["verify".as_ref(), session.as_os_str(), gone.as_os_str()], "gone.ron: cannot be read");
     let machines = ["plan".as_ref(), session.as_os_str(), "--machines".as_ref(), gone.as_os_str()];

@@ -36,7 +36,7 @@ fn without_a_display_one_line_names_the_verbs() {
         assert!(ended.stdout.is_empty());
         let err = String::from_utf8(ended.stderr).unwrap();
         assert_eq!(err.lines().count(), 1, "{err}");
-        assert!(err.contains("orient, reach, plan, verify and demo"), "{err}");
+        assert!(err.contains("orient, reach, azimuth, plan, verify and demo"), "{err}");
     }
 }
 
@@ -48,7 +48,7 @@ fn with_a_display_that_is_not_there_one_line_says_so() {
     let err = String::from_utf8(ended.stderr).unwrap();
     assert_eq!(ended.status.code(), Some(2), "{err}");
     assert_eq!(err.lines().count(), 1, "{err}");
-    assert!(err.contains("no window") && err.contains("orient, reach, plan, verify and demo"), "{err}");
+    assert!(err.contains("no window") && err.contains("orient, reach, azimuth, plan, verify and demo"), "{err}");
 }
 
 #[test]

@@ -1,6 +1,8 @@
 use std::path::PathBuf;
 
 use clap::{Args, Parser, Subcommand};
+use ringwright_core::aim::Reference;
+use ringwright_core::quantity::Index;
 use ringwright_core::route::DEFAULT_TOLERANCE_DEG;
 
 /// From two found peaks to a drive list: planning of measurements on a single-crystal goniometer.
@@ -26,6 +28,7 @@ const STATUS: &str = "Exit status: 0 done, 1 the answer is no, 2 bad input.\n\nE
 pub enum Verb {
     Orient(OrientArgs),
     Reach(ReachArgs),
+    Azimuth(AzimuthArgs),
     Plan(PlanArgs),
     Verify(VerifyArgs),
     Demo(DemoArgs),
@@ -69,6 +72,65 @@ pub struct ReachArgs {
     /// Write the table to this file instead of standard output.
     #[arg(long, value_name = "FILE")]
     pub output: Option<PathBuf>,
+}
+
+/// Turn one reflection about its own Q: the windows of the azimuth in which a setting is allowed, and where other
+/// reflections cross.
+///
+/// Of the session's rules the one that settles the azimuth is left out: a rule that says so, else bisecting, a tie, or the
+/// last hold. Exit status 0 if any azimuth is allowed, 1 if none is.
+#[derive(Debug, Args)]
+#[command(after_help = "Example:\n  ringwright azimuth night.ron --hkl 0,2,4 --at 30")]
+pub struct AzimuthArgs {
+    #[command(flatten)]
+    pub session: SessionArgs,
+    /// The reflection, three numbers.
+    #[arg(long, value_name = "H,K,L", value_parser = triple, allow_hyphen_values = true)]
+    pub hkl: Triple,
+    /// What ψ counts from: h,k,l of a reciprocal direction, or u,v,w in square brackets of a direct one. If left out, that
+    /// of the rules, else the crystal's surface, else 0,0,1.
+    #[arg(long, value_name = "DIRECTION", value_parser = direction, allow_hyphen_values = true)]
+    pub reference: Option<Reference>,
+    /// Also list every setting at this azimuth.
+    #[arg(long, value_name = "DEGREES", value_parser = azimuth_deg, allow_hyphen_values = true)]
+    pub at: Option<f64>,
+    /// Write the report to this file instead of standard output.
+    #[arg(long, value_name = "FILE")]
+    pub output: Option<PathBuf>,
+}
+
+/// Three numbers of a command line.
+#[derive(Debug, Clone, Copy)]
+pub struct Triple(pub [f64; 3]);
+
+fn triple(text: &str) -> Result<Triple, String> {
+    let numbers: Vec<f64> = text.split(',').filter_map(|part| part.trim().parse().ok()).collect();
+    match (numbers.as_slice(), text.split(',').count()) {
+        (&[h, k, l], 3) if [h, k, l].iter().all(|n| n.is_finite() && n.abs() <= 1.0e4) => Ok(Triple([h, k, l])),
+        _ => Err("accepted are three numbers between -10000 and 10000 with commas, for example 1,0,-2".to_owned()),
+    }
+}
+
+fn direction(text: &str) -> Result<Reference, String> {
+    let direct = text.trim().strip_prefix('[').and_then(|rest| rest.strip_suffix(']'));
+    let Triple([x, y, z]) = triple(direct.unwrap_or(text))?;
+    let index = |value| Index::new(value).map_err(|error| error.to_string());
+    let reference = match direct {
+        Some(_) => Reference::Direct { u: index(x)?, v: index(y)?, w: index(z)? },
+        None => Reference::Reciprocal { h: index(x)?, k: index(y)?, l: index(z)? },
+    };
+    if reference.has_direction() {
+        Ok(reference)
+    } else {
+        Err("accepted are three numbers that are not all 0".to_owned())
+    }
+}
+
+fn azimuth_deg(text: &str) -> Result<f64, String> {
+    match text.parse::<f64>() {
+        Ok(deg) if deg.abs() <= 360.0 => Ok(deg),
+        _ => Err("accepted is an angle between -360 and 360 degrees".to_owned()),
+    }
 }
 
 /// Write the drive list of every reachable reflection as CSV, in an order that saves driving.

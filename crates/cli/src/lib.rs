@@ -29,7 +29,7 @@ pub const NO: u8 = 1;
 pub const BAD_INPUT: u8 = 2;
 
 /// The verbs that need no window, for messages.
-pub const HEADLESS_VERBS: &str = "orient, reach, plan, verify and demo";
+pub const HEADLESS_VERBS: &str = "orient, reach, azimuth, plan, verify and demo";
 
 /// Where a run writes to.
 pub struct Streams<'a> {
@@ -77,6 +77,7 @@ pub fn run(arguments: impl IntoIterator<Item = OsString>, streams: &mut Streams<
         None => verbs::window(arguments.session, arguments.machines),
         Some(Verb::Orient(a)) => verbs::orient(&a, &mut desktop).map(Outcome::Finished),
         Some(Verb::Reach(a)) => verbs::reach(&a, &mut desktop).map(Outcome::Finished),
+        Some(Verb::Azimuth(a)) => verbs::azimuth(&a, &mut desktop).map(Outcome::Finished),
         Some(Verb::Plan(a)) => verbs::plan(&a, &mut desktop).map(Outcome::Finished),
         Some(Verb::Verify(a)) => verbs::verify(&a, &mut desktop).map(Outcome::Finished),
         Some(Verb::Demo(a)) => verbs::demo(&a, &mut desktop),

@@ -1,5 +1,6 @@
 //! One file for each verb.
 
+mod azimuth;
 mod demo;
 mod night;
 mod orient;
@@ -8,6 +9,7 @@ mod reach;
 mod verify;
 mod window;
 
+pub use azimuth::azimuth;
 pub use demo::demo;
 pub use orient::orient;
 pub use plan::plan;
