@@ -14,5 +14,6 @@ mod million_nodes;
 mod published_ub;
 mod radiation;
 mod settings_by_search;
+mod simultaneous;
 mod standards;
 mod symmetry;

@@ -8,6 +8,7 @@ mod doctored;
 mod help;
 mod jobs;
 mod outputs;
+mod rules;
 
 use std::ffi::OsString;
 use std::path::{Path, PathBuf};
