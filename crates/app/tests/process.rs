@@ -77,3 +77,44 @@ fn results_and_remarks_keep_apart() {
     assert!(!out.contains(summary), "the summary is no part of the list");
     assert!(String::from_utf8(ended.stderr).unwrap().contains(summary));
 }
+
+/// A save that is killed at any moment leaves the old file or the new one, whole.
+#[cfg(unix)]
+#[test]
+fn a_kill_while_saving_leaves_a_whole_file() {
+    use ringwright_core::session::Session;
+    let folder = tempfile::tempdir().unwrap();
+    let (long, saved) = (folder.path().join("long.ron"), folder.path().join("saved.ron"));
+    // Long enough that writing takes a while: a list of many nodes.
+    let mut session = Session::from_text(&std::fs::read_to_string(SESSION).unwrap(), "demo").unwrap();
+    let node = |i: i32| format!("(h: {}, k: {}, l: {})", i % 40, i % 37, i % 41);
+    let list: Vec<String> = (1..20_000).map(node).collect();
+    session.targets = ron::from_str(&format!("List([{}])", list.join(", "))).unwrap();
+    std::fs::write(&long, session.to_text().unwrap()).unwrap();
+    let orient = |from: &str| {
+        let mut command = without_display();
+        command.args(["orient", from, "--output"]).arg(&saved);
+        command.stdout(Stdio::null()).stderr(Stdio::null());
+        command.spawn().unwrap()
+    };
+    assert!(orient(SESSION).wait().unwrap().success());
+    let old = std::fs::read_to_string(&saved).unwrap();
+    let started = std::time::Instant::now();
+    assert!(orient(long.to_str().unwrap()).wait().unwrap().success());
+    let whole = started.elapsed();
+    let new = std::fs::read_to_string(&saved).unwrap();
+    assert_ne!(old, new);
+    let (mut olds, rounds) = (0, 24);
+    for round in 0..rounds {
+        std::fs::write(&saved, &old).unwrap();
+        let mut child = orient(long.to_str().unwrap());
+        // Most of the writing is at the end.
+        std::thread::sleep(whole.mul_f64(0.5 + 0.6 * f64::from(round) / f64::from(rounds)));
+        child.kill().unwrap();
+        child.wait().unwrap();
+        let left = std::fs::read_to_string(&saved).unwrap();
+        assert!(left == old || left == new, "round {round}: {} bytes of neither", left.len());
+        olds += i32::from(left == old);
+    }
+    assert!(olds > 0, "no kill came in time");
+}

@@ -7,7 +7,7 @@
 use std::time::Instant;
 
 use criterion::Criterion;
-use nalgebra::{Matrix3, Rotation3, Vector3};
+use nalgebra::{Matrix3, Rotation3};
 use ringwright_core::aim::{CrystalOnHead, Preference, Reference, Rule};
 use ringwright_core::crystal::{AbsentNodes, DRange, NodesOutcome, SpaceGroup, SymmetryQuery, UnitCell, nodes};
 use ringwright_core::frames::{Hkl, Vector};
@@ -64,9 +64,11 @@ fn main() {
     let cell = UnitCell::new(30.0, 30.0, 30.0, 90.0, 90.0, 90.0).unwrap();
     let six = rules(&[FREEST, r#"Hold(axis: "mu", at_deg: 0)"#, r#"Hold(axis: "nu", at_deg: 0)"#]);
     let mut criterion = Criterion::default().configure_from_args().sample_size(30);
-    for (machine, rules) in
-        [("eulerian-four-circle", rules(&[FREEST])), ("kappa-four-circle", rules(&[FREEST])), ("six-circle", six.clone())]
-    {
+    for (machine, rules) in [
+        ("eulerian-four-circle", rules(&[FREEST])),
+        ("kappa-four-circle", rules(&[FREEST])),
+        ("six-circle", six.clone()),
+    ] {
         let instrument = built_in_machine(machine).unwrap();
         let crystal = CrystalOnHead { ub: ub(&cell), surface: None };
         let judge = Judge::for_crystal(&instrument, &rules, &Preference::default(), &crystal).unwrap();

@@ -23,7 +23,7 @@ pub use goal::NoAzimuth;
 
 use self::arm::{Arm, Place};
 use self::goal::{Carried, Goal, Twist};
-use self::leaf::{Leaf, MAX_WAYS, Way, Ways};
+use self::leaf::{Leaf, MAX_WAYS, Three, Way, Ways};
 use self::links::{BEAM, Links, rotation};
 use self::plan::{Along, Condition, Plan, Tie};
 use super::attempts::{Attempt, Branch, Freedom};
@@ -51,6 +51,8 @@ pub(super) struct General {
     beam_ties: Vec<Tie>,
     /// The axis that *bisecting* settles by itself, as a place in the chain after the known ties.
     by_bisecting: Option<usize>,
+    /// The three axes that make the whole rotation, where they stay the same for every reflection.
+    three: Option<Three>,
     /// Readings of held axes; the others are filled in.
     template_deg: [f64; MAX_AXES],
     zero_deg: [f64; MAX_AXES],
@@ -147,11 +149,15 @@ impl General {
         let goal = Goal::new(&place.k_f, query.theta);
         let mut template = self.template_deg;
         self.set_detector(place, &mut template);
-        self.with_ties(&self.known_ties, self.links.clone(), template, &mut |links, template| {
+        let mut then = |links: &Links, template| {
             self.each_way_settled(links, &goal, template, query, &mut |links, way, template, query| {
                 query.emit(way.map(|way| (self.setting(links, &way, template), way.freedom)));
             })
-        })
+        };
+        if self.known_ties.is_empty() {
+            return then(&self.links, template);
+        }
+        self.with_ties(&self.known_ties, self.links.clone(), template, &mut then)
     }
 
     /// [`Self::each_way`] for both angles of the axis that *bisecting* settles by itself, if there is one.
@@ -264,7 +270,7 @@ impl General {
     ) -> Result<(), NoAzimuth> {
         match self.plan {
             Plan::Closed(leaf) => {
-                let ways = leaf::solve(leaf, links, query.twist, &query.carried, goal)?;
+                let ways = leaf::solve(leaf, links, self.three.as_ref(), query.twist, &query.carried, goal)?;
                 ways.as_slice().iter().for_each(|way| found(*way, query));
                 Ok(())
             }
@@ -416,7 +422,7 @@ impl Search<'_> {
     }
 
     fn solve(&self, links: &Links) -> Ways {
-        leaf::solve(self.leaf, links, self.twist, &self.carried, self.goal).unwrap_or_default()
+        leaf::solve(self.leaf, links, None, self.twist, &self.carried, self.goal).unwrap_or_default()
     }
 
     fn residual(&self, u: f64, way: &Way) -> Option<f64> {

@@ -64,9 +64,6 @@ pub enum Rule {
     Freest {
         /// What ψ counts from: of two azimuths as good as each other the one nearer to 0 is taken.
         reference: Reference,
-        /// Degrees of ψ by which to keep clear of simultaneous reflections.
-        #[serde(default, skip_serializing_if = "Option::is_none")]
-        keep_clear_deg: Option<Degrees>,
     },
 }
 

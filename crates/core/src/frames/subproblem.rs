@@ -38,6 +38,15 @@ impl Dial {
     }
 }
 
+impl Dial {
+    /// A vector turned about the axis by the angle with this cosine and sine.
+    #[inline]
+    pub fn turned(&self, v: &Vector3<f64>, cosine: f64, sine: f64) -> Vector3<f64> {
+        let [x, y] = self.across(v);
+        self.axis * self.axis.dot(v) + self.mark * (x * cosine - y * sine) + self.quarter * (x * sine + y * cosine)
+    }
+}
+
 /// A unit vector perpendicular to a unit vector.
 fn any_perpendicular(axis: &Vector3<f64>) -> Vector3<f64> {
     let other = if axis.x.abs() < 0.6 { Vector3::x() } else { Vector3::y() };

@@ -74,7 +74,7 @@ impl AzimuthFamily {
         reference: &Reference,
     ) -> Result<Self, RuleError> {
         let mut open = rules.to_vec();
-        let freest = Rule::Freest { reference: *reference, keep_clear_deg: None };
+        let freest = Rule::Freest { reference: *reference };
         let which = open_rule(instrument, rules).ok_or_else(no_family)?;
         open[which] = freest;
         let road = Road::new(instrument, &open, Some(crystal))?;

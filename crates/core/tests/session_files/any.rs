@@ -190,7 +190,7 @@ fn rule() -> impl Strategy<Value = Rule> {
             offset_deg
         }),
         degrees().prop_map(|turned_deg| Rule::DiffractionPlane { turned_deg }),
-        (reference(), of(degrees())).prop_map(|(reference, keep_clear_deg)| Rule::Freest { reference, keep_clear_deg }),
+        reference().prop_map(|reference| Rule::Freest { reference }),
     ]
 }
 

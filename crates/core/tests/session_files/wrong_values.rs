@@ -143,7 +143,7 @@ const SESSION_TABLE: &[Row] = &[
     ),
     ("rules[0]", "▸DiffractionPlane(turned_deg: 0)", "leaves no choice"),
     ("rules[0]", "Freest(reference: ▸Direct(u: 0, v: 0, w: 0))", "has no direction"),
-    ("rules[0]", "Freest(reference: Direct(u: 0, v: 0, w: 1), keep_clear_deg: ▸\"no\")", "is not an angle in degrees"),
+    ("rules[0]", "Freest(reference: Direct(u: 0, v: 0, w: 1), ▸clear: 2)", "clear"),
     ("preference", "Nearest", "there is no Nearest here; accepted are FarthestFromLimits and NearestTo"),
     ("preference.NearestTo.readings_deg", "{}", "at least one axis"),
     ("preference.NearestTo.readings_deg", "{\"kappa\": ▸1}", "has no axis kappa"),

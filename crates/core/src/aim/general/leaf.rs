@@ -9,8 +9,10 @@ use crate::aim::pair::Pair;
 use crate::frames::HalfAngle;
 use crate::frames::subproblem::{Dial, opening, turn};
 
-/// The most ways at a step of a search: two places of a tied detector, up to four turns of each tie, two azimuths, two
-/// openings.
+/// The most ways that a closed form gives: two azimuths, two places of an outer axis, two openings.
+const WAYS: usize = 8;
+
+/// The most ways at a step of a search: two places of a tied detector, up to four turns of each tie, and a closed form.
 pub const MAX_WAYS: usize = 64;
 
 /// Below this sine a direction counts as lying along an axis.
@@ -62,13 +64,13 @@ impl Way {
 /// Each way by its number, which stays the same from node to node: angles, or by how many radians it misses.
 #[derive(Debug, Clone, Copy)]
 pub struct Ways {
-    ways: [Result<Way, f64>; MAX_WAYS],
+    ways: [Result<Way, f64>; WAYS],
     count: usize,
 }
 
 impl Default for Ways {
     fn default() -> Self {
-        Self { ways: [Err(0.0); MAX_WAYS], count: 0 }
+        Self { ways: [Err(0.0); WAYS], count: 0 }
     }
 }
 
@@ -90,13 +92,14 @@ impl Ways {
     }
 }
 
-/// All ways of a closed form to bring what the crystal carries (in the head frame) to the goal.
+/// `three` may be given where the chain is three axes that stay the same. All ways of a closed form to bring what the crystal carries (in the head frame) to the goal.
 ///
 /// # Errors
 /// If the rule wants an azimuth and the reflection has none.
 pub fn solve(
     leaf: Leaf,
     links: &Links,
+    three: Option<&Three>,
     twist: Option<Twist>,
     carried: &Carried,
     goal: &Goal,
@@ -114,7 +117,8 @@ pub fn solve(
             bisecting([a, b, c], &links.reference.direction, &carried.q, goal, &mut ways)
         }
         (Leaf::Turned, &[a, b, c], Some(twist)) => {
-            each_rotation(&carried, goal, twist, 2, &mut ways, |wanted, ways| turned([a, b, c], wanted, ways))?;
+            let three = three.copied().unwrap_or_else(|| Three::new([a, b, c]));
+            each_rotation(&carried, goal, twist, 2, &mut ways, |wanted, ways| three.ways(wanted, ways))?;
         }
         (Leaf::TurnedBisecting, &[..], Some(twist)) => {
             each_rotation(&carried, goal, twist, 4, &mut ways, |wanted, ways| {
@@ -230,29 +234,62 @@ pub fn settled_angles(links: &Links, link: usize, carried: &Carried, goal: &Goal
     open.map(|open| [centre + open.angle(), centre - open.angle()]).map_err(|miss| miss.by_rad)
 }
 
-/// Both ways to make a rotation with three axes.
-fn turned(axes: [Vector3<f64>; 3], wanted: &Matrix3<f64>, ways: &mut Ways) {
-    let [a, b, c] = axes;
-    let c_there = wanted * c;
-    let (first, second) = (HalfAngle::between(&a, &b), HalfAngle::between(&b, &c));
-    let apart = HalfAngle::between(&a, &c_there);
-    let open = match opening(first, second, apart) {
-        Err(miss) => return ways.push_misses(2, miss.by_rad),
-        Ok(open) => open,
-    };
-    let (about_a, about_b, about_c) = (Dial::new(a, &b), Dial::new(b, &a), Dial::new(c, &b));
-    let sum_only = apart.full_sin() < ALONG_AXIS;
-    let centre = turn(about_b.across(&c), [1.0, 0.0]);
-    for side in [1.0, -1.0] {
-        let t1 = centre + side * open.angle();
-        let middle = rotation(&b, t1);
-        let t0 = if sum_only { 0.0 } else { turn(about_a.across(&(middle * c)), about_a.across(&c_there)) };
-        // What is left is a turn about c: seen on a direction across it, no digits are lost.
-        let mark = middle.inverse() * (rotation(&a, -t0) * (wanted * about_c.mark));
-        let t2 = turn([1.0, 0.0], about_c.across(&mark));
-        let freedom = if sum_only { Freedom::OnlySumFixed } else { Freedom::None };
-        ways.push(Ok(Way::new(&[t0, t1, t2], freedom)));
+/// Three axes that are to make a given rotation: all that depends on them alone.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Three {
+    outer: Dial,
+    middle: Dial,
+    inner: Dial,
+    first: HalfAngle,
+    second: HalfAngle,
+    /// The middle angle in radians at which the inner axis comes nearest to the outer one; its cosine and sine.
+    centre: (f64, f64, f64),
+}
+
+impl Three {
+    /// Outer, middle and inner axis, unit vectors.
+    pub fn new(axes: [Vector3<f64>; 3]) -> Self {
+        let [a, b, c] = axes;
+        let (outer, middle, inner) = (Dial::new(a, &b), Dial::new(b, &a), Dial::new(c, &b));
+        let centre = turn(middle.across(&c), [1.0, 0.0]);
+        let (first, second) = (HalfAngle::between(&a, &b), HalfAngle::between(&b, &c));
+        Self { outer, middle, inner, first, second, centre: (centre, centre.cos(), centre.sin()) }
     }
+
+    /// Both ways to make a rotation. Sines and cosines are carried from step to step; only what is told needs an angle.
+    fn ways(&self, wanted: &Matrix3<f64>, ways: &mut Ways) {
+        let c_there = wanted * self.inner.axis;
+        let apart = HalfAngle::between(&self.outer.axis, &c_there);
+        let open = match opening(self.first, self.second, apart) {
+            Err(miss) => return ways.push_misses(2, miss.by_rad),
+            Ok(open) => open,
+        };
+        let sum_only = apart.full_sin() < ALONG_AXIS;
+        let freedom = if sum_only { Freedom::OnlySumFixed } else { Freedom::None };
+        let (centre, cos_centre, sin_centre) = self.centre;
+        let (cos_open, sin_open, open_rad) = (open.full_cos(), open.full_sin(), open.angle());
+        let to = self.outer.across(&c_there);
+        let mark_there = wanted * self.inner.mark;
+        for side in [1.0, -1.0] {
+            let (cos1, sin1) = (
+                cos_centre * cos_open - side * sin_centre * sin_open,
+                sin_centre * cos_open + side * cos_centre * sin_open,
+            );
+            let from = self.outer.across(&self.middle.turned(&self.inner.axis, cos1, sin1));
+            let (cos0, sin0) = if sum_only { (1.0, 0.0) } else { cosine_and_sine(from, to) };
+            // What is left is a turn about the inner axis: seen on a direction across it, no digits are lost.
+            let mark = self.middle.turned(&self.outer.turned(&mark_there, cos0, -sin0), cos1, -sin1);
+            let [x, y] = self.inner.across(&mark);
+            ways.push(Ok(Way::new(&[sin0.atan2(cos0), centre + side * open_rad, y.atan2(x)], freedom)));
+        }
+    }
+}
+
+/// Cosine and sine of the turn from one planar direction to another.
+fn cosine_and_sine(from: [f64; 2], to: [f64; 2]) -> (f64, f64) {
+    let (sin, cos) = (from[0] * to[1] - from[1] * to[0], from[0] * to[0] + from[1] * to[1]);
+    let length = sin.hypot(cos);
+    if length > 0.0 { (cos / length, sin / length) } else { (1.0, 0.0) }
 }
 
 /// The rotation is given, so the spindle's place is: the outermost axis brings the reference axis into the plane of
@@ -280,7 +317,7 @@ fn turned_bisecting(links: &Links, wanted: &Matrix3<f64>, goal: &Goal, ways: &mu
                 let rest = links.hold(0, t0);
                 let &[b, c, d] = rest.directions() else { return };
                 let first = ways.count;
-                turned([b, c, d], &(wanted * rotation(&a, -t0).matrix()), ways);
+                Three::new([b, c, d]).ways(&(wanted * rotation(&a, -t0).matrix()), ways);
                 for way in ways.ways[first..ways.count].iter_mut().flatten() {
                     *way = way.with(0, t0);
                     if free {

@@ -3,8 +3,9 @@ use nalgebra::Vector3;
 use super::General;
 use super::arm::{Arm, Multiple, Swing};
 use super::goal::Twist;
+use super::leaf::{Leaf, Three};
 use super::links::{BEAM, Links, rotation};
-use super::plan::{Tie, Wishes, plan, settled_by_bisecting};
+use super::plan::{Plan, Tie, Wishes, plan, settled_by_bisecting};
 use crate::aim::fit::reference_axis;
 use crate::aim::{CrystalOnHead, Reference, Rule, RuleError};
 use crate::instrument::{Instrument, MAX_AXES};
@@ -83,6 +84,10 @@ impl General {
             beam_ties: &beam_ties,
         };
         let plan = plan(&then, &wishes)?;
+        let three = match (plan, links.directions()) {
+            (Plan::Closed(Leaf::Turned), &[a, b, c]) if known_ties.is_empty() => Some(Three::new([a, b, c])),
+            _ => None,
+        };
         let axis_count = instrument.axis_count();
         Ok(Self {
             links,
@@ -94,6 +99,7 @@ impl General {
             ties,
             beam_ties,
             by_bisecting,
+            three,
             template_deg,
             zero_deg,
             sample_count,
