@@ -8,6 +8,7 @@ mod crystal;
 mod machine;
 mod orientation;
 mod peaks;
+mod rules;
 mod targets;
 mod wishes;
 

@@ -1,11 +1,13 @@
 use egui::{ComboBox, Ui};
+use ringwright_core::aim::Reference;
 use ringwright_core::crystal::{Centring, SymmetryQuery};
-use ringwright_core::quantity::{CellAngle, Length};
+use ringwright_core::quantity::{CellAngle, Index, Length};
 use ringwright_core::session::CellDocument;
 
 use super::super::edits::{Edits, Field, figure};
 use super::Bench;
 use super::card::{card, remark, row_name};
+use super::rules;
 
 const KINDS: [&str; 4] = ["Space group", "Number", "Hall symbol", "Lattice only"];
 
@@ -38,9 +40,29 @@ fn body(ui: &mut Ui, bench: &mut Bench<'_>) {
         let text = format!("{group}, Laue class {}, V = {:.2} Å³", group.laue_class(), resolved.cell.volume());
         remark(ui, &text);
     }
+    surface(ui, bench);
+    bench.show_errors(ui, "crystal.surface");
     for note in bench.notes("crystal") {
         remark(ui, &note);
     }
+}
+
+/// The outward normal of a surface, if the crystal has one.
+fn surface(ui: &mut Ui, bench: &mut Bench<'_>) {
+    ui.horizontal(|ui| {
+        row_name(ui, "Surface");
+        let mut has = bench.session.crystal.surface.is_some();
+        let word = if has { "" } else { "none" };
+        if ui.checkbox(&mut has, word).changed() {
+            let index = |value| Index::new(value).ok();
+            let normal = || Some(Reference::Reciprocal { h: index(0.0)?, k: index(0.0)?, l: index(1.0)? });
+            bench.session.crystal.surface = if has { normal() } else { None };
+            bench.edits.forget_under("crystal.surface");
+        }
+        if let Some(normal) = &mut bench.session.crystal.surface {
+            rules::direction(ui, bench.edits, "crystal.surface", "Outward normal of the surface", normal);
+        }
+    });
 }
 
 fn cell(ui: &mut Ui, edits: &mut Edits, cell: &mut CellDocument) {

@@ -110,3 +110,14 @@ fn ron_targets(min: f64) -> ringwright_core::session::Targets {
     let min_angstrom = ringwright_core::quantity::Length::new(min).unwrap();
     ringwright_core::session::Targets::SpacingRange { min_angstrom, max_angstrom: None, with_absent: false }
 }
+
+#[test]
+fn the_slots_tell_which_spare_angles_the_rules_fill() {
+    let mut harness = demo(0);
+    assert!(harness.query_by_label("Spare angle 1: filled by bisecting").is_some());
+    press(&mut harness, "Add a rule");
+    assert!(harness.query_by_label("Spare angle 2: bisecting is one too many").is_some());
+    press(&mut harness, "Remove rule 2");
+    press(&mut harness, "Remove rule 1");
+    assert!(harness.query_by_label("Spare angle 1: empty: one more rule is wanted").is_some());
+}
