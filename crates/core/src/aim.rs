@@ -20,8 +20,9 @@ mod solver;
 #[allow(clippy::unwrap_used)]
 mod tests;
 
-pub(crate) use attempts::MAX_BRANCHES;
-pub use attempts::{Attempt, Attempts, Branch, Freedom};
+pub use attempts::{Attempt, Branch, Freedom};
+pub(crate) use attempts::{Attempts, MAX_BRANCHES, Row};
 pub use fit::RuleError;
 pub use rule::{Preference, Rule};
+pub(crate) use solver::Solved;
 pub use solver::{OutsideSphere, Solver};

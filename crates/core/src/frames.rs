@@ -5,8 +5,8 @@
 mod half_angle;
 mod hkl;
 mod spaces;
-pub mod subproblem;
+pub(crate) mod subproblem;
 
-pub use half_angle::HalfAngle;
+pub(crate) use half_angle::HalfAngle;
 pub use hkl::Hkl;
 pub use spaces::{CrystalCartesian, Frame, Head, Lab, Rotation, Vector, angle_between};

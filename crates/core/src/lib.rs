@@ -10,6 +10,7 @@ pub mod crystal;
 pub mod exchange;
 pub mod frames;
 pub mod instrument;
+mod lanes;
 pub mod orient;
 pub mod pace;
 pub mod quantity;

@@ -1,6 +1,8 @@
 //! Whether a setting is allowed, and why not; which of the settings of a reflection to take.
 
 mod judge;
+mod score;
+mod stretch;
 mod table;
 mod verdict;
 

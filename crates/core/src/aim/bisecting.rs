@@ -1,11 +1,9 @@
-use nalgebra::Vector3;
-
-use super::attempts::{Attempts, Freedom, MAX_BRANCHES};
+use super::attempts::{Attempts, Freedom};
 use super::chain::Chain;
 use super::detector::{DetectorArm, DetectorPlace};
-
 use crate::frames::HalfAngle;
-use crate::frames::subproblem::{CLOSING_TOLERANCE_RAD, Dial, opening_of, turn};
+use crate::frames::subproblem::{CLOSING_TOLERANCE_RAD, Dial, extremes, opening, turn};
+use crate::lanes::{Mask, Real, Triple};
 
 /// Below this sine of the angle between Q and an axis the axis turns the crystal about Q only.
 const ALONG_AXIS: f64 = 1e-9;
@@ -20,10 +18,15 @@ const ALONG_AXIS: f64 = 1e-9;
 pub(super) struct Bisecting {
     outer: Dial,
     inner: Dial,
-    /// The middle angle in degrees at which the spindle stands nearest to the reference axis.
+    /// Positions of the three axes among all axes of the machine, and their zero offsets in degrees.
+    axes: [usize; 3],
+    zero_deg: [f64; 3],
+    /// The reading of the middle axis in degrees at which the spindle stands nearest to the reference axis.
     middle_zero_deg: f64,
     difference: (f64, f64),
     sum: (f64, f64),
+    /// The smallest and the largest angle in radians between spindle and reference axis.
+    extremes_rad: (f64, f64),
     outer_bearing: Bearing,
     inner_bearing: Bearing,
     /// The reference axis stands at the same angle from Q̂ for both signs of the detector, so the triangles are shared.
@@ -32,34 +35,38 @@ pub(super) struct Bisecting {
 
 /// The triangle a₁, a₂, a₃ for one side of Q̂: all that does not depend on where Q̂ stands about a₁. Angles in degrees.
 #[derive(Debug, Clone, Copy)]
-struct Triangle {
+struct Triangle<T: Real> {
     /// By how much it fails to close; 0 if it closes.
-    miss_deg: f64,
-    opening_deg: f64,
+    miss_deg: T,
+    opening_deg: T,
     /// Bearing of the spindle about the reference axis, and of the reference axis about the spindle, at opening +.
-    outer_deg: f64,
-    inner_deg: f64,
+    outer_deg: T,
+    inner_deg: T,
     /// Whether ζ points to the other side of a₁ than Q̂ does.
-    beyond: bool,
-    only_sum_fixed: bool,
+    beyond: T::Mask,
+    only_sum_fixed: T::Mask,
 }
 
 impl Bisecting {
-    /// For a chain of three axes, neither neighbours parallel.
+    /// For a chain of three axes, no neighbours parallel.
     pub fn new(chain: &Chain, arm: &DetectorArm) -> Option<Self> {
         let [a1, a2, a3] = chain.directions[..] else { return None };
-        let (first, second) = (HalfAngle::between(&a1, &a2), HalfAngle::between(&a2, &a3));
+        let (first, second) = (HalfAngle::between(&a1.into(), &a2), HalfAngle::between(&a2.into(), &a3));
         if first.full_sin() < 1e-6 || second.full_sin() < 1e-6 {
             return None;
         }
         let middle = Dial::new(a2, &a1);
+        let zero_deg = chain.zero_deg[..].try_into().ok()?;
         let (difference, sum) = (first.half_difference(second), first.half_sum(second));
         Some(Self {
             outer: Dial::new(a1, &a2),
             inner: Dial::new(a3, &a2),
-            middle_zero_deg: turn(middle.across(&a3), [1.0, 0.0]).to_degrees(),
+            axes: chain.indices[..].try_into().ok()?,
+            zero_deg,
+            middle_zero_deg: turn(middle.across(&a3.into()), [1.0, 0.0]).to_degrees() + zero_deg[1],
             difference,
             sum,
+            extremes_rad: extremes(difference, sum),
             outer_bearing: Bearing::new(first, second, difference.0, sum.1),
             inner_bearing: Bearing::new(second, first, -difference.0, sum.1),
             both_signs_alike: arm.sideways().dot(&a1).abs() < 1e-14,
@@ -67,77 +74,74 @@ impl Bisecting {
     }
 
     /// The four ways to bring the direction `carried` (a unit vector) onto Q̂ for each place of the detector: κ = +1, −1
-    /// and within it opening +, −. Fills the rows of the three axes, without their zero offsets.
-    #[inline]
-    pub fn solve(&self, carried: &Vector3<f64>, places: &[DetectorPlace; 2], axes: &[usize], attempts: &mut Attempts) {
+    /// and within it opening +, −. Fills the rows of the three axes.
+    #[inline(always)]
+    pub fn solve<T: Real>(&self, carried: &Triple<T>, places: &[DetectorPlace<T>; 2], attempts: &mut Attempts<T>) {
         let rho = HalfAngle::between(carried, &self.inner.axis);
         let [cx, cy] = self.inner.across(carried);
         let carried_deg = cy.atan2(cx).to_degrees();
-        let spindle_free = rho.full_sin() < ALONG_AXIS;
-        let (mut outer, mut middle, mut inner) = ([0.0; MAX_BRANCHES], [0.0; MAX_BRANCHES], [0.0; MAX_BRANCHES]);
+        let spindle_free = rho.full_sin().below(cx.like(ALONG_AXIS));
+        let [outer, middle, inner] = self.axes;
         let mut triangles = self.triangles(&places[0].q, rho);
         for (sign, place) in places.iter().enumerate() {
             if sign > 0 && !self.both_signs_alike {
                 triangles = self.triangles(&place.q, rho);
             }
             let [qx, qy] = self.outer.across(&place.q);
-            let q_deg = qy.atan2(qx).to_degrees();
+            let q_deg = qy.atan2(qx).to_degrees() + self.zero_deg[0];
             for (i, t) in triangles.iter().enumerate() {
-                let at_outer = q_deg + half_turn_if(t.beyond);
-                let at_inner = half_turn_if(t.beyond != (i == 1)) - carried_deg;
-                let branch = 4 * sign + 2 * i;
-                (outer[branch], outer[branch + 1]) = (at_outer + t.outer_deg, at_outer - t.outer_deg);
-                middle[branch] = self.middle_zero_deg + t.opening_deg;
-                middle[branch + 1] = self.middle_zero_deg - t.opening_deg;
-                (inner[branch], inner[branch + 1]) = (at_inner + t.inner_deg, at_inner - t.inner_deg);
-                let freedom = match (spindle_free, t.only_sum_fixed) {
-                    (true, _) => Freedom::InnerAxis,
-                    (false, true) => Freedom::OnlySumFixed,
-                    (false, false) => Freedom::None,
-                };
-                for way in [branch, branch + 1] {
-                    attempts.miss_deg[way] = t.miss_deg;
-                    attempts.freedom[way] = freedom;
+                let at_outer = q_deg + half_turn_where(t.beyond, cx);
+                let to_inner = half_turn_where(if i == 1 { !t.beyond } else { t.beyond }, cx) - carried_deg;
+                let at_inner = to_inner + self.zero_deg[2];
+                let free = T::choose(t.only_sum_fixed, cx.like(Freedom::OnlySumFixed.code()), cx.like(0.0));
+                let freedom = T::choose(spindle_free, cx.like(Freedom::InnerAxis.code()), free);
+                for (branch, side) in [(4 * sign + 2 * i, 1.0), (4 * sign + 2 * i + 1, -1.0)] {
+                    attempts.readings_deg[outer][branch] = at_outer + t.outer_deg * side;
+                    attempts.readings_deg[middle][branch] = t.opening_deg * side + self.middle_zero_deg;
+                    attempts.readings_deg[inner][branch] = at_inner + t.inner_deg * side;
+                    attempts.miss_deg[branch] = t.miss_deg;
+                    attempts.freedom[branch] = freedom;
                 }
             }
         }
-        if spindle_free {
-            inner = [0.0; MAX_BRANCHES];
-        }
-        for (&axis, row) in axes.iter().zip([outer, middle, inner]) {
-            attempts.readings_deg[axis] = row;
+        if spindle_free.any() {
+            for reading in &mut attempts.readings_deg[inner] {
+                *reading = T::choose(spindle_free, cx.like(self.zero_deg[2]), *reading);
+            }
         }
     }
 
     /// The triangles for κ = +1 and −1.
-    #[inline]
-    fn triangles(&self, q: &Vector3<f64>, rho: HalfAngle) -> [Triangle; 2] {
+    #[inline(always)]
+    fn triangles<T: Real>(&self, q: &Triple<T>, rho: HalfAngle<T>) -> [Triangle<T>; 2] {
         let mu = HalfAngle::between(q, &self.outer.axis);
         [self.triangle(mu.half_sum(rho)), self.triangle(mu.half_difference(rho))]
     }
 
     /// The triangle for ζ, given as sine and cosine of its half; ζ may lie anywhere between −π and 2π.
-    #[inline]
-    fn triangle(&self, (s, c): (f64, f64)) -> Triangle {
+    #[inline(always)]
+    fn triangle<T: Real>(&self, (s, c): (T, T)) -> Triangle<T> {
         let zeta = HalfAngle { sin: s.abs(), cos: c.abs() };
-        let (open, miss_deg) = match opening_of(self.difference, self.sum, zeta) {
-            Ok(open) => (open, 0.0),
-            Err(miss) => (HalfAngle { sin: 0.0, cos: 1.0 }, miss.by_rad.to_degrees()),
-        };
+        let open = opening(pair(self.difference, s), pair(self.sum, s), zeta);
         Triangle {
-            miss_deg,
-            opening_deg: open.angle().to_degrees(),
-            outer_deg: self.outer_bearing.angle_rad(open).to_degrees(),
-            inner_deg: self.inner_bearing.angle_rad(open).to_degrees(),
-            beyond: s * c < 0.0,
-            only_sum_fixed: zeta.full_sin() < ALONG_AXIS,
+            miss_deg: open.miss_rad(pair(self.extremes_rad, s)).to_degrees(),
+            opening_deg: open.half.angle().to_degrees(),
+            outer_deg: self.outer_bearing.angle_rad(open.half).to_degrees(),
+            inner_deg: self.inner_bearing.angle_rad(open.half).to_degrees(),
+            beyond: (s * c).below(s.like(0.0)),
+            only_sum_fixed: zeta.full_sin().below(s.like(ALONG_AXIS)),
         }
     }
 }
 
-#[inline]
-fn half_turn_if(condition: bool) -> f64 {
-    if condition { 180.0 } else { 0.0 }
+#[inline(always)]
+fn pair<T: Real>((a, b): (f64, f64), like: T) -> (T, T) {
+    (like.like(a), like.like(b))
+}
+
+#[inline(always)]
+fn half_turn_where<T: Real>(mask: T::Mask, like: T) -> T {
+    T::choose(mask, like.like(180.0), like.like(0.0))
 }
 
 /// The direction in which one end of the triangle sees the other, as a function of the opening, with the factors that
@@ -171,15 +175,14 @@ impl Bearing {
     }
 
     /// The bearing in radians at opening +, away from the middle axis; at opening − it is the opposite.
-    #[inline]
-    fn angle_rad(self, open: HalfAngle) -> f64 {
+    #[inline(always)]
+    fn angle_rad<T: Real>(self, open: HalfAngle<T>) -> T {
+        let HalfAngle { sin, cos } = open;
         match self {
-            Self::Plain { start, along, across } => {
-                (across * open.sin * open.cos).atan2(start + along * open.sin * open.sin)
-            }
-            Self::Equal { cosine } => open.cos.atan2(cosine * open.sin),
-            Self::Supplementary { cosine } => open.sin.atan2(-cosine * open.cos),
-            Self::Right => std::f64::consts::FRAC_PI_2,
+            Self::Plain { start, along, across } => (sin * cos * across).atan2(sin * sin * along + start),
+            Self::Equal { cosine } => cos.atan2(sin * cosine),
+            Self::Supplementary { cosine } => sin.atan2(cos * -cosine),
+            Self::Right => sin.like(std::f64::consts::FRAC_PI_2),
         }
     }
 }

@@ -1,6 +1,7 @@
 use nalgebra::Vector3;
 
 use crate::frames::subproblem::CLOSING_TOLERANCE_RAD;
+use crate::lanes::{Mask, Real, Triple};
 
 /// A detector on one axis: where Q points for each of its two signs.
 #[derive(Debug, Clone, PartialEq)]
@@ -15,11 +16,11 @@ pub(super) struct DetectorArm {
 
 /// The place of the detector for one sign.
 #[derive(Debug, Clone, Copy)]
-pub(super) struct DetectorPlace {
-    /// Angle of the detector axis in radians.
-    pub angle_rad: f64,
+pub(super) struct DetectorPlace<T> {
+    /// Angle of the detector axis in degrees.
+    pub angle_deg: T,
     /// Unit vector along Q in the lab frame.
-    pub q: Vector3<f64>,
+    pub q: Triple<T>,
 }
 
 impl DetectorArm {
@@ -39,25 +40,48 @@ impl DetectorArm {
         &self.sideways
     }
 
-    /// Both places, the one at a positive angle first, for sin θ above 0.
+    /// Both places, the one at a positive angle first, for sin θ from 0 to 1, and by how many degrees 2θ lies beyond what
+    /// the arm reaches.
     ///
     /// With ẑ·D(δ)ẑ = cos 2θ it follows that sin(δ/2) = sin θ / sin(axis, beam).
-    ///
-    /// # Errors
-    /// By how many radians 2θ lies beyond what the arm reaches.
-    #[inline]
-    pub fn places(&self, sin_theta: f64) -> Result<[DetectorPlace; 2], f64> {
-        let mut s = sin_theta / self.sine;
-        if s > 1.0 {
-            let by_rad = 2.0 * (sin_theta.min(1.0).asin() - self.sine.min(1.0).asin());
-            if by_rad > CLOSING_TOLERANCE_RAD {
-                return Err(by_rad);
-            }
-            s = 1.0;
-        }
-        let c = ((1.0 - s) * (1.0 + s)).sqrt();
-        let angle_rad = 2.0 * s.atan2(c);
-        let (swing, back) = (self.sideways * c, self.forward * s);
-        Ok([DetectorPlace { angle_rad, q: swing - back }, DetectorPlace { angle_rad: -angle_rad, q: -swing - back }])
+    #[inline(always)]
+    pub fn places<T: Real>(&self, sin_theta: T) -> ([DetectorPlace<T>; 2], T) {
+        let one = sin_theta.like(1.0);
+        let s = sin_theta * (1.0 / self.sine);
+        let miss_deg = self.miss_deg(sin_theta, one.below(s));
+        let s = s.smaller(one);
+        let c = cosine(s);
+        let angle_deg = (s.atan2(c) * 2.0).to_degrees();
+        let plus = DetectorPlace { angle_deg, q: self.q(s, c) };
+        let minus = DetectorPlace { angle_deg: -angle_deg, q: self.q(s, -c) };
+        ([plus, minus], miss_deg)
     }
+
+    #[inline(always)]
+    fn q<T: Real>(&self, back: T, swing: T) -> Triple<T> {
+        let Self { sideways, forward, .. } = self;
+        [
+            swing * sideways.x - back * forward.x,
+            swing * sideways.y - back * forward.y,
+            swing * sideways.z - back * forward.z,
+        ]
+    }
+
+    #[inline(always)]
+    fn miss_deg<T: Real>(&self, sin_theta: T, beyond: T::Mask) -> T {
+        let zero = sin_theta.like(0.0);
+        if !beyond.any() {
+            return zero;
+        }
+        let reach_rad = self.sine.min(1.0).asin();
+        let by_rad = (sin_theta.atan2(cosine(sin_theta)) - reach_rad) * 2.0;
+        T::choose(beyond & zero.like(CLOSING_TOLERANCE_RAD).below(by_rad), by_rad.to_degrees(), zero)
+    }
+}
+
+/// The cosine, not negative, of an angle with this sine.
+#[inline(always)]
+fn cosine<T: Real>(sine: T) -> T {
+    let one = sine.like(1.0);
+    ((one - sine) * (one + sine)).sqrt()
 }

@@ -1,10 +1,9 @@
-use nalgebra::Vector3;
-
 use super::attempts::{Attempts, Freedom};
 use super::chain::Chain;
 use super::detector::DetectorPlace;
 use crate::frames::HalfAngle;
-use crate::frames::subproblem::{Dial, bearing, opening, turn};
+use crate::frames::subproblem::{Dial, bearing, extremes, opening, turn};
+use crate::lanes::{Real, Triple};
 
 /// Below this sine a direction counts as lying along an axis, whose angle is then free.
 const ALONG_AXIS: f64 = 1e-9;
@@ -15,75 +14,70 @@ pub(super) struct Pair {
     outer: Dial,
     inner: Dial,
     between: HalfAngle,
-}
-
-/// One of the two ways to set the pair.
-#[derive(Debug, Clone, Copy)]
-struct PairAngles {
-    /// Angles of outer and inner axis in radians.
-    angles_rad: [f64; 2],
-    /// What was free.
-    freedom: Freedom,
+    /// The two axes lie along one line.
+    one_line: bool,
+    /// Positions of the two axes among all axes of the machine, and their zero offsets in degrees.
+    axes: [usize; 2],
+    zero_deg: [f64; 2],
 }
 
 impl Pair {
     /// The two moving axes of a chain.
     pub fn new(chain: &Chain) -> Option<Self> {
         let [a1, a2] = chain.directions[..] else { return None };
-        Some(Self { outer: Dial::new(a1, &a2), inner: Dial::new(a2, &a1), between: HalfAngle::between(&a1, &a2) })
+        let between = HalfAngle::between(&a1.into(), &a2);
+        Some(Self {
+            outer: Dial::new(a1, &a2),
+            inner: Dial::new(a2, &a1),
+            between,
+            one_line: between.full_sin() < ALONG_AXIS,
+            axes: chain.indices[..].try_into().ok()?,
+            zero_deg: chain.zero_deg[..].try_into().ok()?,
+        })
     }
 
-    /// Both ways to take the direction `carried` (a unit vector) onto Q̂ for each place of the detector. Fills the rows of
-    /// the two axes, without their zero offsets.
-    pub fn solve(&self, carried: &Vector3<f64>, places: &[DetectorPlace; 2], axes: &[usize], attempts: &mut Attempts) {
+    /// Both ways (side +1, −1) to take the direction `carried` (a unit vector) onto Q̂ for each place of the detector. Fills
+    /// the rows of the two axes.
+    #[inline(always)]
+    pub fn solve<T: Real>(&self, carried: &Triple<T>, places: &[DetectorPlace<T>; 2], attempts: &mut Attempts<T>) {
+        let zero = carried[0].like(0.0);
+        let (between, arm) = (HalfAngle::like(self.between, zero), HalfAngle::between(carried, &self.inner.axis));
+        let (difference, sum) = (between.half_difference(arm), between.half_sum(arm));
+        let along_axis = zero.like(ALONG_AXIS);
+        let inner_free = arm.full_sin().below(along_axis);
+        let seen = turn(self.inner.across(carried), [zero.like(1.0), zero]);
         for (sign, place) in places.iter().enumerate() {
-            let ways = self.angles(carried, &place.q);
-            for way in 0..2 {
-                let branch = 2 * sign + way;
-                match ways {
-                    Err(by_rad) => attempts.miss_deg[branch] = by_rad.to_degrees(),
-                    Ok(ways) => {
-                        attempts.miss_deg[branch] = 0.0;
-                        attempts.freedom[branch] = ways[way].freedom;
-                        for (&axis, angle) in axes.iter().zip(ways[way].angles_rad) {
-                            attempts.readings_deg[axis][branch] = angle.to_degrees();
-                        }
-                    }
+            let wanted = HalfAngle::between(&place.q, &self.outer.axis);
+            let outer_free = wanted.full_sin().below(along_axis);
+            let target = self.outer.across(&place.q);
+            let open = opening(difference, sum, wanted);
+            let miss_deg = open.miss_rad(extremes(difference, sum)).to_degrees();
+            let freedom = self.freedom(inner_free, outer_free, zero);
+            for (branch, side) in [(2 * sign, 1.0), (2 * sign + 1, -1.0)] {
+                let (outer, inner) = if self.one_line {
+                    // Only the sum of the two angles counts: the inner one stays at 0.
+                    (turn(self.outer.across(carried), target), zero)
+                } else {
+                    let outer = turn(bearing(between, arm, open.half, side), target);
+                    (outer, T::choose(inner_free, zero, seen + open.half.angle() * side))
+                };
+                let outer = T::choose(outer_free, zero, outer);
+                for (row, angle) in [outer, inner].into_iter().enumerate() {
+                    attempts.readings_deg[self.axes[row]][branch] = angle.to_degrees() + self.zero_deg[row];
                 }
+                attempts.miss_deg[branch] = miss_deg;
+                attempts.freedom[branch] = freedom;
             }
         }
     }
 
-    /// Both ways (side +1, side −1) to take `carried` to `target`, unit vectors.
-    ///
-    /// # Errors
-    /// By how many radians the target is out of reach.
-    fn angles(&self, carried: &Vector3<f64>, target: &Vector3<f64>) -> Result<[PairAngles; 2], f64> {
-        let arm = HalfAngle::between(&self.inner.axis, carried);
-        let wanted = HalfAngle::between(&self.outer.axis, target);
-        let open = opening(self.between, arm, wanted).map_err(|miss| miss.by_rad)?;
-        let outer_free = wanted.full_sin() < ALONG_AXIS;
-        let one_line = self.between.full_sin() < ALONG_AXIS;
-        let inner_free = arm.full_sin() < ALONG_AXIS || one_line;
-        let freedom = match (one_line, inner_free, outer_free) {
-            (true, _, _) => Freedom::OnlySumFixed,
-            (false, true, _) => Freedom::InnerAxis,
-            (false, false, true) => Freedom::OuterAxis,
-            (false, false, false) => Freedom::None,
-        };
-        let seen = self.inner.across(carried);
-        let way = |side: f64| {
-            let t2 = if inner_free { 0.0 } else { turn(seen, [1.0, 0.0]) + side * open.angle() };
-            let t1 = if outer_free {
-                0.0
-            } else if one_line {
-                // Only the sum of the two angles counts: the inner one stays at 0.
-                turn(self.outer.across(carried), self.outer.across(target))
-            } else {
-                turn(bearing(self.between, arm, open, side), self.outer.across(target))
-            };
-            PairAngles { angles_rad: [t1, t2], freedom }
-        };
-        Ok([way(1.0), way(-1.0)])
+    /// What is free, as [`Freedom::code`].
+    #[inline(always)]
+    fn freedom<T: Real>(&self, inner_free: T::Mask, outer_free: T::Mask, zero: T) -> T {
+        if self.one_line {
+            return zero.like(Freedom::OnlySumFixed.code());
+        }
+        let outer = T::choose(outer_free, zero.like(Freedom::OuterAxis.code()), zero);
+        T::choose(inner_free, zero.like(Freedom::InnerAxis.code()), outer)
     }
 }

@@ -1,12 +1,15 @@
-use super::attempts::{Attempt, Attempts, Freedom, MAX_BRANCHES};
+use nalgebra::Vector3;
+
+use super::attempts::{Attempt, Attempts, MAX_BRANCHES};
 use super::bisecting::Bisecting;
 use super::chain::Chain;
-use super::detector::{DetectorArm, DetectorPlace};
+use super::detector::DetectorArm;
 use super::fit::{RuleError, bisectable, held_readings};
 use super::pair::Pair;
 use super::rule::Rule;
 use crate::frames::{Head, Vector};
 use crate::instrument::{Instrument, MAX_AXES};
+use crate::lanes::{Mask, Real, Triple, dot};
 
 /// A node beyond the sphere of radius 2/λ.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -18,12 +21,15 @@ pub struct OutsideSphere {
 /// Solves the diffraction condition R U B h = Q for one machine under one set of rules.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Solver {
-    chain: Chain,
+    /// The sample axes that move, as positions among all axes.
+    moving: Vec<usize>,
     arm: DetectorArm,
     method: Method,
+    /// Rows of M, which takes the head frame to where the moving axes see it.
+    held_rows: [Vector3<f64>; 3],
     /// Readings of held axes; the others are filled in.
     template_deg: [f64; MAX_AXES],
-    zero_deg: [f64; MAX_AXES],
+    detector_zero_deg: f64,
     axis_count: usize,
 }
 
@@ -53,17 +59,19 @@ impl Solver {
             3 => return Err(RuleError::NotBisectable),
             _ => return Err(not_covered()),
         };
-        let (mut template_deg, mut zero_deg) = ([0.0; MAX_AXES], [0.0; MAX_AXES]);
-        for (i, axis) in instrument.axes().enumerate() {
-            template_deg[i] = held_deg.get(i).copied().flatten().unwrap_or(0.0);
-            zero_deg[i] = axis.zero_offset_deg;
+        let mut template_deg = [0.0; MAX_AXES];
+        for (template, held) in template_deg.iter_mut().zip(held_deg) {
+            *template = held.unwrap_or(0.0);
         }
-        Ok(Self { chain, arm, method, template_deg, zero_deg, axis_count: instrument.axis_count() })
+        let held_rows = [0, 1, 2].map(|row| chain.held.row(row).transpose());
+        let detector_zero_deg = detector_axis.zero_offset_deg;
+        let axis_count = instrument.axis_count();
+        Ok(Self { moving: chain.indices, arm, method, held_rows, template_deg, detector_zero_deg, axis_count })
     }
 
     /// The sample axes that move, as positions among all axes.
     pub fn moving_sample_axes(&self) -> &[usize] {
-        &self.chain.indices
+        &self.moving
     }
 
     /// How many closed-form solutions there are for each reflection, counted without limits.
@@ -74,55 +82,52 @@ impl Solver {
         }
     }
 
-    /// Room for the solutions of one reflection, to be filled by [`Self::solve`].
-    pub fn attempts(&self) -> Attempts {
+    /// Room for the solutions of as many reflections as `zero` has numbers, to be filled by [`Self::solve`].
+    pub(crate) fn attempts<T: Real>(&self, zero: T) -> Attempts<T> {
         Attempts {
             count: self.branch_count(),
-            readings_deg: self.template_deg.map(|held| [held; MAX_BRANCHES]),
-            miss_deg: [0.0; MAX_BRANCHES],
-            freedom: [Freedom::None; MAX_BRANCHES],
+            readings_deg: self.template_deg.map(|held| [zero.like(held); MAX_BRANCHES]),
+            miss_deg: [zero; MAX_BRANCHES],
+            freedom: [zero; MAX_BRANCHES],
             axis_count: self.axis_count,
         }
     }
 
-    /// Every closed-form solution for a node at `q_in_head` = U B h (Å⁻¹, not zero) and a wavelength in Å.
-    ///
-    /// # Errors
-    /// If the node lies outside the sphere of radius 2/λ.
-    #[inline]
-    pub fn solve(
+    /// Every closed-form solution for a node at `q_in_head` = U B h (Å⁻¹, not zero) and a wavelength in Å. For a
+    /// node outside the sphere of radius 2/λ they are without meaning: see [`Solved::inside`].
+    #[inline(always)]
+    pub(crate) fn solve<T: Real>(
         &self,
-        q_in_head: Vector<Head>,
+        q_in_head: &Triple<T>,
         wavelength_angstrom: f64,
-        attempts: &mut Attempts,
-    ) -> Result<(), OutsideSphere> {
-        let length = q_in_head.norm();
-        let sin_theta = 0.5 * wavelength_angstrom * length;
-        // A node on the sphere's edge to rounding, d = λ/2, is on it.
-        if sin_theta > 1.0 + 1e-14 {
-            return Err(OutsideSphere { longest_wavelength_angstrom: 2.0 / length });
-        }
-        let places = match self.arm.places(sin_theta.min(1.0)) {
-            Ok(places) => places,
-            Err(by_rad) => {
-                attempts.fail_all(by_rad.to_degrees());
-                return Ok(());
-            }
-        };
-        let carried = self.chain.held * (q_in_head.raw() * (1.0 / length));
+        attempts: &mut Attempts<T>,
+    ) -> Solved<T> {
+        let [x, y, z] = *q_in_head;
+        let length = (x * x + y * y + z * z).sqrt();
+        let sin_theta = length * (0.5 * wavelength_angstrom);
+        let (places, beyond_deg) = self.arm.places(sin_theta.smaller(x.like(1.0)));
+        let unit = x.like(1.0) / length;
+        let (direction, held) = ([x * unit, y * unit, z * unit], &self.held_rows);
+        let carried = [dot(&held[0], &direction), dot(&held[1], &direction), dot(&held[2], &direction)];
         match &self.method {
-            Method::Bisecting(method) => method.solve(&carried, &places, &self.chain.indices, attempts),
-            Method::Pair(method) => method.solve(&carried, &places, &self.chain.indices, attempts),
+            Method::Bisecting(method) => method.solve(&carried, &places, attempts),
+            Method::Pair(method) => method.solve(&carried, &places, attempts),
         }
-        self.place_detector(&places, attempts);
-        for &axis in &self.chain.indices {
-            let zero = self.zero_deg[axis];
-            attempts.readings_deg[axis].iter_mut().for_each(|reading| *reading += zero);
+        // The first half of the branches has the detector at a positive angle.
+        let (detector, half) = (self.axis_count - 1, attempts.count / 2);
+        let [plus, minus] =
+            [places[0].angle_deg + self.detector_zero_deg, places[1].angle_deg + self.detector_zero_deg];
+        for (branch, reading) in attempts.readings_deg[detector].iter_mut().enumerate() {
+            *reading = if branch < half { plus } else { minus };
         }
-        Ok(())
+        if x.like(0.0).below(beyond_deg).any() {
+            attempts.miss_at_least(beyond_deg);
+        }
+        Solved { length, sin_theta }
     }
 
-    /// [`Self::solve`] with room made for the purpose; `found` gets the solutions in the order of branches.
+    /// Every closed-form solution for a node at `q_in_head` = U B h (Å⁻¹, not zero) and a wavelength in Å; `found` gets them
+    /// in the order of branches.
     ///
     /// # Errors
     /// If the node lies outside the sphere of radius 2/λ.
@@ -132,20 +137,31 @@ impl Solver {
         wavelength_angstrom: f64,
         found: impl FnMut(Attempt),
     ) -> Result<(), OutsideSphere> {
-        let mut attempts = self.attempts();
-        self.solve(q_in_head, wavelength_angstrom, &mut attempts)?;
+        let mut attempts = self.attempts(0.0);
+        let solved = self.solve(&(*q_in_head.raw()).into(), wavelength_angstrom, &mut attempts);
+        solved.inside()?;
         attempts.iter().for_each(found);
         Ok(())
     }
+}
 
-    /// The first half of the branches has the detector at a positive angle.
-    #[inline]
-    fn place_detector(&self, places: &[DetectorPlace; 2], attempts: &mut Attempts) {
-        let detector = self.axis_count - 1;
-        let half = attempts.count / 2;
-        let [plus, minus] = places.map(|place| place.angle_rad.to_degrees() + self.zero_deg[detector]);
-        for (branch, reading) in attempts.readings_deg[detector].iter_mut().enumerate() {
-            *reading = if branch < half { plus } else { minus };
+/// What [`Solver::solve`] found on the way.
+#[derive(Debug, Clone, Copy)]
+pub(crate) struct Solved<T> {
+    /// |Q| in Å⁻¹.
+    pub length: T,
+    /// sin θ; above 1 outside the sphere of radius 2/λ.
+    pub sin_theta: T,
+}
+
+impl Solved<f64> {
+    /// # Errors
+    /// If the node lies outside the sphere of radius 2/λ.
+    pub fn inside(&self) -> Result<(), OutsideSphere> {
+        // A node on the sphere's edge to rounding, d = λ/2, is on it.
+        if self.sin_theta > 1.0 + 1e-14 {
+            return Err(OutsideSphere { longest_wavelength_angstrom: 2.0 / self.length });
         }
+        Ok(())
     }
 }

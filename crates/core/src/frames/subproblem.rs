@@ -7,6 +7,7 @@
 use nalgebra::Vector3;
 
 use super::HalfAngle;
+use crate::lanes::{Mask, Real, Triple, dot};
 
 /// A triangle that misses closing by this much, in radians, is taken to close: a few thousand rounding errors, far below
 /// the 1e-10 to which settings fulfil the diffraction condition.
@@ -32,9 +33,9 @@ impl Dial {
     }
 
     /// The part of a vector across the axis, as its components along mark and quarter.
-    #[inline]
-    pub fn across(&self, v: &Vector3<f64>) -> [f64; 2] {
-        [self.mark.dot(v), self.quarter.dot(v)]
+    #[inline(always)]
+    pub fn across<T: Real>(&self, v: &Triple<T>) -> [T; 2] {
+        [dot(&self.mark, v), dot(&self.quarter, v)]
     }
 }
 
@@ -45,77 +46,75 @@ fn any_perpendicular(axis: &Vector3<f64>) -> Vector3<f64> {
 }
 
 /// The right-handed turn in radians, −π to π, from one planar direction to another; 0 if either has no length.
-#[inline]
-pub fn turn(from: [f64; 2], to: [f64; 2]) -> f64 {
+#[inline(always)]
+pub fn turn<T: Real>(from: [T; 2], to: [T; 2]) -> T {
     (from[0] * to[1] - from[1] * to[0]).atan2(from[0] * to[0] + from[1] * to[1])
 }
 
-/// Why an outer axis cannot bring a direction, carried by an inner axis, to a wanted angle from itself.
-#[derive(Debug, Clone, Copy, PartialEq)]
-pub struct Miss {
-    /// By how many radians the wanted angle lies outside what the two axes can make.
-    pub by_rad: f64,
+/// How far the triangle of two axes and a carried direction opens.
+#[derive(Debug, Clone, Copy)]
+pub struct Opening<T: Real> {
+    /// The angle, 0 to π, between the place of the carried direction and the one nearest to the outer axis.
+    pub half: HalfAngle<T>,
+    /// Where the triangle does not close, unless by rounding.
+    fails: T::Mask,
+    wanted: HalfAngle<T>,
 }
 
 /// Two axes at `axes` from each other; a direction at `carried` from the inner one is turned about it until it stands at
 /// `wanted` from the outer one. Gives the angle, 0 to π, between that place and the one nearest to the outer axis: the
-/// turn is plus or minus this.
+/// turn is plus or minus this. `difference` and `sum` are the sines and cosines of half of axes − carried and of half of
+/// axes + carried.
 ///
 /// cos(wanted) = cos(axes) cos(carried) + sin(axes) sin(carried) cos(opening).
-///
-/// # Errors
-/// By how much the triangle fails to close.
-#[inline]
-pub fn opening(axes: HalfAngle, carried: HalfAngle, wanted: HalfAngle) -> Result<HalfAngle, Miss> {
-    opening_of(axes.half_difference(carried), axes.half_sum(carried), wanted)
-}
-
-/// [`opening`] with the half difference and half sum of axes and carried made beforehand.
-#[inline]
-pub fn opening_of(difference: (f64, f64), sum: (f64, f64), wanted: HalfAngle) -> Result<HalfAngle, Miss> {
+#[inline(always)]
+pub fn opening<T: Real>(difference: (T, T), sum: (T, T), wanted: HalfAngle<T>) -> Opening<T> {
     let HalfAngle { sin, cos } = wanted;
+    let zero = sin.like(0.0);
     let near = (sin * difference.1 + cos * difference.0) * (sin * difference.1 - cos * difference.0);
     let far = (sum.0 * cos + sum.1 * sin) * (sum.0 * cos - sum.1 * sin);
-    if near < 0.0 || far < 0.0 {
-        let by_rad = shortfall(difference, sum, wanted);
-        if by_rad > CLOSING_TOLERANCE_RAD {
-            return Err(Miss { by_rad });
-        }
-    }
-    let (near, far) = (near.max(0.0), far.max(0.0));
+    let fails = near.below(zero) | far.below(zero);
+    let (near, far) = (near.larger(zero), far.larger(zero));
     let length = near + far;
     // Both vanish where the carried direction lies along the inner axis: the turn is then free, and zero will do.
-    if length > 0.0 {
-        Ok(HalfAngle { sin: (near / length).sqrt(), cos: (far / length).sqrt() })
-    } else {
-        Ok(HalfAngle { sin: 0.0, cos: 1.0 })
+    let closes = zero.below(length);
+    let (sin, cos) = ((near / length).sqrt(), (far / length).sqrt());
+    let half = HalfAngle { sin: T::choose(closes, sin, zero), cos: T::choose(closes, cos, zero.like(1.0)) };
+    Opening { half, fails, wanted }
+}
+
+impl<T: Real> Opening<T> {
+    /// By how many radians the wanted angle lies below `least` or above `most`, the angles that the two axes can make
+    /// ([`extremes`]); 0 where the triangle closes.
+    #[inline(always)]
+    pub fn miss_rad(&self, extremes: (T, T)) -> T {
+        let zero = self.wanted.sin.like(0.0);
+        if !self.fails.any() {
+            return zero;
+        }
+        let wanted = self.wanted.angle();
+        let by_rad = (extremes.0 - wanted).larger(wanted - extremes.1);
+        T::choose(self.fails & zero.like(CLOSING_TOLERANCE_RAD).below(by_rad), by_rad, zero)
     }
 }
 
-/// Radians by which `wanted` lies below |axes − carried| or above axes + carried (or 2π less that).
-#[cold]
-fn shortfall(difference: (f64, f64), sum: (f64, f64), wanted: HalfAngle) -> f64 {
-    let wanted = wanted.angle();
-    let least = 2.0 * difference.0.abs().atan2(difference.1);
-    let sum = 2.0 * sum.0.atan2(sum.1);
-    let most = sum.min(2.0 * std::f64::consts::PI - sum);
-    (least - wanted).max(wanted - most).max(0.0)
+/// The smallest and the largest angle in radians from the outer axis that a carried direction can be brought to:
+/// |axes − carried|, and axes + carried or 2π less that. Arguments as for [`opening`].
+#[inline(always)]
+pub fn extremes<T: Real>(difference: (T, T), sum: (T, T)) -> (T, T) {
+    let least = difference.0.abs().atan2(difference.1) * 2.0;
+    let most = sum.0.atan2(sum.1) * 2.0;
+    (least, most.smaller(-most + 2.0 * std::f64::consts::PI))
 }
 
 /// Where a direction, carried by an inner axis and turned by `side` × `opening` away from the place nearest to the outer
 /// axis, stands about the outer axis: components along the side where the inner axis lies and a quarter turn on (not
 /// normalised). `side` is +1 or −1.
-#[inline]
-pub fn bearing(axes: HalfAngle, carried: HalfAngle, opening: HalfAngle, side: f64) -> [f64; 2] {
-    let sine = carried.full_sin();
-    let difference = {
-        let (s, c) = axes.half_difference(carried);
-        2.0 * s * c
-    };
-    [
-        difference + 2.0 * sine * axes.full_cos() * opening.sin * opening.sin,
-        -side * 2.0 * sine * opening.sin * opening.cos,
-    ]
+#[inline(always)]
+pub fn bearing<T: Real>(axes: HalfAngle<T>, carried: HalfAngle<T>, opening: HalfAngle<T>, side: f64) -> [T; 2] {
+    let sine = carried.full_sin() * 2.0;
+    let (s, c) = axes.half_difference(carried);
+    [s * c * 2.0 + sine * axes.full_cos() * opening.sin * opening.sin, sine * opening.sin * opening.cos * -side]
 }
 
 #[cfg(test)]
@@ -130,6 +129,17 @@ mod tests {
         Rotation3::from_axis_angle(&Unit::new_unchecked(axis), angle) * v
     }
 
+    fn between(a: &Vector3<f64>, b: &Vector3<f64>) -> HalfAngle {
+        HalfAngle::between(&(*a).into(), b)
+    }
+
+    /// The opening, and by how many radians the triangle fails to close.
+    fn open(axes: HalfAngle, carried: HalfAngle, wanted: HalfAngle) -> (HalfAngle, f64) {
+        let (difference, sum) = (axes.half_difference(carried), axes.half_sum(carried));
+        let open = opening(difference, sum, wanted);
+        (open.half, open.miss_rad(extremes(difference, sum)))
+    }
+
     proptest! {
         #![proptest_config(cases())]
 
@@ -138,17 +148,16 @@ mod tests {
         fn two_axes_take_a_direction_to_a_direction(
             outer in unit_vector(), inner in unit_vector(), carried in unit_vector(), t1 in -3.0..3.0f64, t2 in -3.0..3.0f64,
         ) {
-            let axes = HalfAngle::between(&outer, &inner);
+            let axes = between(&outer, &inner);
             prop_assume!(axes.full_sin() > 1e-3);
             let target = rotate(outer, t1, rotate(inner, t2, carried));
-            let arm = HalfAngle::between(&inner, &carried);
-            let open = opening(axes, arm, HalfAngle::between(&outer, &target));
-            prop_assert!(open.is_ok());
-            let Ok(open) = open else { return Ok(()) };
+            let arm = between(&inner, &carried);
+            let (open, miss) = open(axes, arm, between(&outer, &target));
+            prop_assert_eq!(miss, 0.0);
             let (about_outer, about_inner) = (Dial::new(outer, &inner), Dial::new(inner, &outer));
             for side in [1.0, -1.0] {
-                let a2 = turn(about_inner.across(&carried), [1.0, 0.0]) + side * open.angle();
-                let a1 = turn(bearing(axes, arm, open, side), about_outer.across(&target));
+                let a2 = turn(about_inner.across(&carried.into()), [1.0, 0.0]) + side * open.angle();
+                let a1 = turn(bearing(axes, arm, open, side), about_outer.across(&target.into()));
                 let arrived = rotate(outer, a1, rotate(inner, a2, carried));
                 prop_assert!((arrived - target).norm() < 1e-11, "{side}: {}", (arrived - target).norm());
             }
@@ -158,20 +167,20 @@ mod tests {
     #[test]
     fn a_miss_says_by_how_much() {
         let tilt = |deg: f64| Vector3::new(deg.to_radians().sin(), deg.to_radians().cos(), 0.0);
-        let axes = HalfAngle::between(&tilt(0.0), &tilt(50.0));
-        let arm = HalfAngle::between(&tilt(50.0), &tilt(0.0));
-        let miss = opening(axes, arm, HalfAngle::between(&tilt(0.0), &tilt(107.0)));
-        assert!(miss.is_err_and(|m| (m.by_rad.to_degrees() - 7.0).abs() < 1e-9), "two axes 50° apart reach to 100°");
-        let narrow = HalfAngle::between(&tilt(50.0), &tilt(30.0));
-        let near = opening(axes, narrow, HalfAngle::between(&tilt(0.0), &tilt(12.0)));
-        assert!(near.is_err_and(|m| (m.by_rad.to_degrees() - 18.0).abs() < 1e-9), "30° is as near as it comes");
+        let axes = between(&tilt(0.0), &tilt(50.0));
+        let arm = between(&tilt(50.0), &tilt(0.0));
+        let (_, miss) = open(axes, arm, between(&tilt(0.0), &tilt(107.0)));
+        assert!((miss.to_degrees() - 7.0).abs() < 1e-9, "two axes 50° apart reach to 100°");
+        let narrow = between(&tilt(50.0), &tilt(30.0));
+        let (_, near) = open(axes, narrow, between(&tilt(0.0), &tilt(12.0)));
+        assert!((near.to_degrees() - 18.0).abs() < 1e-9, "30° is as near as it comes");
     }
 
     #[test]
     fn the_edge_is_a_double_root() {
         let tilt = |deg: f64| Vector3::new(deg.to_radians().sin(), deg.to_radians().cos(), 0.0);
-        let axes = HalfAngle::between(&tilt(0.0), &tilt(50.0));
-        let edge = opening(axes, axes, HalfAngle::between(&tilt(0.0), &tilt(100.0)));
-        assert!(edge.is_ok_and(|o| (o.angle() - std::f64::consts::PI).abs() < 1e-6));
+        let axes = between(&tilt(0.0), &tilt(50.0));
+        let (edge, miss) = open(axes, axes, between(&tilt(0.0), &tilt(100.0)));
+        assert!(miss == 0.0 && (edge.angle() - std::f64::consts::PI).abs() < 1e-6);
     }
 }

@@ -1,4 +1,5 @@
 use super::{Approach, Interval, Limits, MachineProblem};
+use crate::lanes::Real;
 
 /// The readings an axis may take as *targets*: the limits, less the room that an overshoot needs at one end.
 #[derive(Debug, Clone, PartialEq)]
@@ -15,11 +16,11 @@ struct Span {
 
 /// How a reading stands to the limits.
 #[derive(Debug, Clone, Copy, PartialEq)]
-pub struct TravelCheck {
+pub struct TravelCheck<T = f64> {
     /// The representative (reading + 360°k) deepest inside the limits, or nearest to them, in degrees.
-    pub reading_deg: f64,
+    pub reading_deg: T,
     /// Degrees to the nearest limit: negative outside, infinite on an endless axis.
-    pub clearance_deg: f64,
+    pub clearance_deg: T,
 }
 
 /// Adding and taking away this number rounds a double below 2⁵¹ to an integer: one instruction each, where `round` is a
@@ -27,9 +28,9 @@ pub struct TravelCheck {
 const ROUNDING: f64 = 6_755_399_441_055_744.0;
 
 /// The angle in degrees that differs from `deg` by full turns and lies in −180° to 180°.
-#[inline]
-pub(crate) fn wrap_deg(deg: f64) -> f64 {
-    deg - 360.0 * ((deg * (1.0 / 360.0) + ROUNDING) - ROUNDING)
+#[inline(always)]
+pub(crate) fn wrap_deg<T: Real>(deg: T) -> T {
+    deg - ((deg * (1.0 / 360.0) + ROUNDING) - ROUNDING) * 360.0
 }
 
 impl Travel {
@@ -76,29 +77,43 @@ impl Travel {
     }
 
     /// Chooses among reading + 360°k the one deepest inside the limits. On an endless axis, −180° to 180°.
-    #[inline]
     pub fn check(&self, reading_deg: f64) -> TravelCheck {
+        self.checks(reading_deg)
+    }
+
+    /// [`Self::check`] for one reading or several side by side.
+    #[inline(always)]
+    pub(crate) fn checks<T: Real>(&self, reading_deg: T) -> TravelCheck<T> {
         let Some((first, rest)) = self.spans.split_first() else {
-            return TravelCheck { reading_deg: wrap_deg(reading_deg), clearance_deg: f64::INFINITY };
+            let clearance_deg = reading_deg.like(f64::INFINITY);
+            return TravelCheck { reading_deg: wrap_deg(reading_deg), clearance_deg };
         };
-        let mut best = first.check(reading_deg);
+        let mut best = first.checks(reading_deg);
         for span in rest {
-            let other = span.check(reading_deg);
-            if other.clearance_deg > best.clearance_deg {
-                best = other;
-            }
+            let other = span.checks(reading_deg);
+            let better = best.clearance_deg.below(other.clearance_deg);
+            best.reading_deg = T::choose(better, other.reading_deg, best.reading_deg);
+            best.clearance_deg = T::choose(better, other.clearance_deg, best.clearance_deg);
         }
         best
     }
 
-    /// Degrees to the nearest limit of the representative that [`Self::check`] chooses, for several readings at once.
-    #[inline]
-    pub fn clearances_deg<const N: usize>(&self, readings_deg: &[f64; N]) -> [f64; N] {
-        let Some((first, rest)) = self.spans.split_first() else { return [f64::INFINITY; N] };
-        let mut clearances = readings_deg.map(|reading| first.check(reading).clearance_deg);
+    /// Degrees to the nearest limit of the representative that [`Self::check`] chooses, for a row of readings.
+    #[inline(always)]
+    pub(crate) fn clearances_deg<T: Real, const N: usize>(&self, readings_deg: &[T; N]) -> [T; N] {
+        let mut clearances = *readings_deg;
+        let Some((first, rest)) = self.spans.split_first() else {
+            for clearance in &mut clearances {
+                *clearance = clearance.like(f64::INFINITY);
+            }
+            return clearances;
+        };
+        for clearance in &mut clearances {
+            *clearance = first.checks(*clearance).clearance_deg;
+        }
         for span in rest {
             for (clearance, &reading) in clearances.iter_mut().zip(readings_deg) {
-                *clearance = clearance.max(span.check(reading).clearance_deg);
+                *clearance = clearance.larger(span.checks(reading).clearance_deg);
             }
         }
         clearances
@@ -180,10 +195,10 @@ impl Span {
     }
 
     /// The representative nearest to the centre is deepest inside if any is inside, and nearest if none is.
-    #[inline]
-    fn check(&self, reading_deg: f64) -> TravelCheck {
+    #[inline(always)]
+    fn checks<T: Real>(&self, reading_deg: T) -> TravelCheck<T> {
         let off = wrap_deg(reading_deg - self.centre);
-        TravelCheck { reading_deg: self.centre + off, clearance_deg: self.half - off.abs() }
+        TravelCheck { reading_deg: off + self.centre, clearance_deg: off.like(self.half) - off.abs() }
     }
 }
 

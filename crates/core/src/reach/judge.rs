@@ -1,20 +1,14 @@
-use crate::aim::{
-    Attempt, Attempts, Branch, Freedom, MAX_BRANCHES, OutsideSphere, Preference, Rule, RuleError, Solver,
-};
-use crate::frames::{Head, Vector};
-use crate::instrument::{Instrument, LIMIT_DUST_DEG, MAX_AXES, Setting, Travel};
-
 use super::Verdict;
+use super::score::Score;
+use crate::aim::{Attempt, Attempts, Branch, Freedom, OutsideSphere, Preference, Rule, RuleError, Solved, Solver};
+use crate::frames::{Head, Vector};
+use crate::instrument::{Instrument, LIMIT_DUST_DEG, MAX_AXES, Setting};
 
 /// Judges every setting of a reflection against the machine's limits, and chooses among those allowed.
 #[derive(Debug, Clone)]
 pub struct Judge {
     solver: Solver,
-    travel: Vec<Travel>,
-    /// Whether an axis counts in the measure *farthest from every limit*: moving sample axes do.
-    counts: [bool; MAX_AXES],
-    limited: Vec<LimitedAxis>,
-    preferred_deg: Option<[Option<f64>; MAX_AXES]>,
+    pub(super) score: Score,
     cone_deg: f64,
     sin_half_cone: f64,
 }
@@ -56,15 +50,6 @@ pub enum Settings {
 /// Settings that differ by less than this on every axis, in degrees, are one: double roots come out this close.
 const SAME_SETTING_DEG: f64 = 1e-5;
 
-/// A setting must be better by more than this, in degrees, to displace an earlier one: rounding decides no choice.
-const BETTER_BY_DEG: f64 = 1e-9;
-
-/// Where merits of settings that miss begin, far below that of any allowed one.
-const BELOW_ALL_ALLOWED: f64 = -1e6;
-
-/// Stands for the clearance of a machine without limits, so that comparisons stay defined.
-const MORE_THAN_ANY_LIMIT_DEG: f64 = 1e5;
-
 impl Judge {
     /// Prepares a machine under a set of rules and a preference.
     ///
@@ -72,28 +57,10 @@ impl Judge {
     /// If the rules do not fit the machine.
     pub fn new(instrument: &Instrument, rules: &[Rule], preference: &Preference) -> Result<Self, RuleError> {
         let solver = Solver::new(instrument, rules)?;
-        let mut counts = [false; MAX_AXES];
-        for &axis in solver.moving_sample_axes() {
-            counts[axis] = true;
-        }
-        let preferred_deg = match preference {
-            Preference::FarthestFromLimits => None,
-            Preference::NearestTo { readings_deg } => {
-                let mut wanted = [None; MAX_AXES];
-                for (slot, axis) in wanted.iter_mut().zip(instrument.axes()) {
-                    *slot = readings_deg.get(&axis.name).map(|deg| deg.get());
-                }
-                Some(wanted)
-            }
-        };
-        let travel: Vec<Travel> = instrument.axes().map(|axis| axis.travel.clone()).collect();
-        let limited = |(axis, travel): (usize, &Travel)| {
-            (!travel.is_endless()).then(|| LimitedAxis { axis, counts: counts[axis], travel: travel.clone() })
-        };
-        let limited = travel.iter().enumerate().filter_map(limited).collect();
+        let score = Score::new(instrument, solver.moving_sample_axes(), preference);
         let cone_deg = instrument.direct_beam_half_angle_deg();
         let sin_half_cone = (0.5 * cone_deg).to_radians().sin();
-        Ok(Self { solver, travel, counts, limited, preferred_deg, cone_deg, sin_half_cone })
+        Ok(Self { solver, score, cone_deg, sin_half_cone })
     }
 
     /// The solver underneath.
@@ -103,151 +70,83 @@ impl Judge {
 
     /// Every setting of the reflection at `q_in_head` = U B h in Å⁻¹, for a wavelength in Å.
     pub fn every_setting(&self, q_in_head: Vector<Head>, wavelength_angstrom: f64) -> Settings {
-        let cone = self.cone_verdict(q_in_head, wavelength_angstrom);
-        let mut all: Vec<JudgedSetting> = Vec::with_capacity(8);
-        let solved = self.solver.each_attempt(q_in_head, wavelength_angstrom, |attempt| {
-            let mut judged = self.judge(&attempt);
-            if let Some(verdict) = cone {
-                judged.verdict = verdict;
-            }
+        let (attempts, solved) = self.attempts(q_in_head, wavelength_angstrom);
+        if let Err(outside) = solved.inside() {
+            return Settings::Outside(outside);
+        }
+        let mut all: Vec<JudgedSetting> = Vec::with_capacity(attempts.count);
+        for attempt in attempts.iter() {
+            let judged = self.judge(&attempt, &solved);
             if !all.iter().any(|other| same_place(other, &judged)) {
                 all.push(judged);
             }
-        });
-        match solved {
-            Ok(()) => Settings::Judged(all),
-            Err(outside) => Settings::Outside(outside),
         }
+        Settings::Judged(all)
     }
 
-    /// The verdict on one reflection and the setting chosen. `attempts` is room made by [`Solver::attempts`].
-    #[inline]
-    pub fn verdict_in(&self, q_in_head: Vector<Head>, wavelength_angstrom: f64, attempts: &mut Attempts) -> Judgement {
-        if let Err(outside) = self.solver.solve(q_in_head, wavelength_angstrom, attempts) {
-            let longest_wavelength_angstrom = outside.longest_wavelength_angstrom;
-            return Judgement { verdict: Verdict::OutsideSphere { longest_wavelength_angstrom }, setting: None };
+    /// The verdict on the reflection at `q_in_head` = U B h in Å⁻¹, for a wavelength in Å, and the setting chosen.
+    pub fn verdict(&self, q_in_head: Vector<Head>, wavelength_angstrom: f64) -> Judgement {
+        let (attempts, solved) = self.attempts(q_in_head, wavelength_angstrom);
+        if let Err(outside) = solved.inside() {
+            return Judgement { verdict: outside.into(), setting: None };
         }
-        let merits = self.merits(attempts);
-        let (mut best, mut best_merit) = (0, merits[0]);
-        for (branch, &merit) in merits.iter().enumerate().take(attempts.count).skip(1) {
-            if merit > best_merit + BETTER_BY_DEG {
-                (best, best_merit) = (branch, merit);
-            }
-        }
-        let mut judged = self.judge(&attempts.get(best));
-        if let Some(verdict) = self.cone_verdict(q_in_head, wavelength_angstrom) {
-            judged.verdict = verdict;
-        }
+        let best = self.score.best(&attempts);
+        let judged = self.judge(&attempts.get(best.branch as usize), &solved);
         Judgement { verdict: judged.verdict, setting: Some(judged) }
     }
 
-    /// [`Self::verdict_in`] with room made for the purpose.
-    pub fn verdict(&self, q_in_head: Vector<Head>, wavelength_angstrom: f64) -> Judgement {
-        self.verdict_in(q_in_head, wavelength_angstrom, &mut self.solver.attempts())
+    fn attempts(&self, q_in_head: Vector<Head>, wavelength_angstrom: f64) -> (Attempts<f64>, Solved<f64>) {
+        let mut attempts = self.solver.attempts(0.0);
+        let solved = self.solver.solve(&(*q_in_head.raw()).into(), wavelength_angstrom, &mut attempts);
+        (attempts, solved)
     }
 
-    /// The cone holds for every setting of a reflection, because it depends on 2θ alone.
-    #[inline]
-    fn cone_verdict(&self, q_in_head: Vector<Head>, wavelength_angstrom: f64) -> Option<Verdict> {
-        let sin_theta = 0.5 * wavelength_angstrom * q_in_head.norm();
-        if sin_theta > self.sin_half_cone {
-            return None;
-        }
-        let by_deg = self.cone_deg - 2.0 * sin_theta.asin().to_degrees();
-        (by_deg > LIMIT_DUST_DEG).then_some(Verdict::InDirectBeam { by_deg })
-    }
-
-    #[inline]
-    fn judge(&self, attempt: &Attempt) -> JudgedSetting {
+    fn judge(&self, attempt: &Attempt, solved: &Solved<f64>) -> JudgedSetting {
         match *attempt {
             Attempt::CannotMake { branch, by_deg } => JudgedSetting {
                 branch,
                 setting: None,
                 freedom: Freedom::None,
-                verdict: Verdict::CannotMake { by_deg },
+                verdict: self.reason(solved, by_deg, 0, 0.0),
                 clearance_deg: f64::NEG_INFINITY,
             },
-            Attempt::Setting { branch, setting, freedom } => self.judge_setting(branch, &setting, freedom),
-        }
-    }
-
-    #[inline]
-    fn judge_setting(&self, branch: Branch, setting: &Setting, freedom: Freedom) -> JudgedSetting {
-        let mut readings = [0.0; MAX_AXES];
-        let mut clearance_deg = f64::INFINITY;
-        let mut worst = (0, f64::INFINITY);
-        let given = setting.readings_deg();
-        for (i, (travel, &reading)) in self.travel.iter().zip(given).enumerate() {
-            let near = self.preferred_deg.as_ref().and_then(|wanted| wanted[i]);
-            let check = near.map_or_else(|| travel.check(reading), |near| travel.check_near(reading, near));
-            readings[i] = check.reading_deg;
-            if check.clearance_deg < worst.1 {
-                worst = (i, check.clearance_deg);
-            }
-            if self.counts[i] {
-                clearance_deg = clearance_deg.min(check.clearance_deg);
-            }
-        }
-        let verdict = if worst.1 < -LIMIT_DUST_DEG {
-            Verdict::OverLimit { axis: worst.0 as u8, by_deg: -worst.1 }
-        } else {
-            Verdict::Reachable
-        };
-        JudgedSetting { branch, setting: Some(Setting::new(&readings[..given.len()])), freedom, verdict, clearance_deg }
-    }
-
-    /// What the preference makes of each branch, in degrees: more is better. Any allowed setting beats any that misses.
-    #[inline]
-    fn merits(&self, attempts: &Attempts) -> [f64; MAX_BRANCHES] {
-        let mut worst = [MORE_THAN_ANY_LIMIT_DEG; MAX_BRANCHES];
-        let mut roomiest = [MORE_THAN_ANY_LIMIT_DEG; MAX_BRANCHES];
-        for limited in &self.limited {
-            let clearance = limited.travel.clearances_deg(&attempts.readings_deg[limited.axis]);
-            for branch in 0..MAX_BRANCHES {
-                worst[branch] = smaller(worst[branch], clearance[branch]);
-                if limited.counts {
-                    roomiest[branch] = smaller(roomiest[branch], clearance[branch]);
+            Attempt::Setting { branch, setting, freedom } => {
+                let given = setting.readings_deg();
+                let mut readings_deg = [0.0; MAX_AXES];
+                readings_deg[..given.len()].copy_from_slice(given);
+                let check = self.score.check(&readings_deg);
+                JudgedSetting {
+                    branch,
+                    setting: Some(Setting::new(&check.readings_deg[..given.len()])),
+                    freedom,
+                    verdict: self.reason(solved, 0.0, check.worst_axis as u8, check.worst_deg),
+                    clearance_deg: check.clearance_deg,
                 }
             }
         }
-        let mut merits = [0.0; MAX_BRANCHES];
-        for (branch, merit) in merits.iter_mut().enumerate() {
-            let worst = smaller(worst[branch], -attempts.miss_deg[branch]);
-            *merit = if worst < -LIMIT_DUST_DEG { BELOW_ALL_ALLOWED + worst } else { roomiest[branch] };
+    }
+
+    /// The verdict on a setting that the axes miss by `miss_deg` and whose `worst_axis` has `worst_deg` to its limit. The
+    /// cone comes before limits, because it depends on 2θ alone and holds for every setting of a reflection.
+    #[inline(always)]
+    pub(super) fn reason(&self, solved: &Solved<f64>, miss_deg: f64, worst_axis: u8, worst_deg: f64) -> Verdict {
+        if let Err(outside) = solved.inside() {
+            return outside.into();
         }
-        if let Some(wanted) = &self.preferred_deg {
-            for (branch, merit) in merits.iter_mut().enumerate().take(attempts.count) {
-                if let (true, Attempt::Setting { setting, .. }) =
-                    (*merit > 0.5 * BELOW_ALL_ALLOWED, attempts.get(branch))
-                {
-                    *merit = self.nearness(&setting, wanted);
-                }
+        if solved.sin_theta <= self.sin_half_cone {
+            let by_deg = self.cone_deg - 2.0 * solved.sin_theta.asin().to_degrees();
+            if by_deg > LIMIT_DUST_DEG {
+                return Verdict::InDirectBeam { by_deg };
             }
         }
-        merits
+        if miss_deg > 0.0 {
+            return Verdict::CannotMake { by_deg: miss_deg };
+        }
+        if worst_deg < -LIMIT_DUST_DEG {
+            return Verdict::OverLimit { axis: worst_axis, by_deg: -worst_deg };
+        }
+        Verdict::Reachable
     }
-
-    /// Minus the largest turn in degrees from a wanted position.
-    fn nearness(&self, setting: &Setting, wanted: &[Option<f64>; MAX_AXES]) -> f64 {
-        let turns = setting.readings_deg().iter().zip(&self.travel).zip(wanted).map(|((&reading, travel), wanted)| {
-            wanted.map_or(0.0, |near| (travel.check_near(reading, near).reading_deg - near).abs())
-        });
-        -turns.fold(0.0, f64::max)
-    }
-}
-
-/// An axis with limits, as the scoring of many settings wants it.
-#[derive(Debug, Clone)]
-struct LimitedAxis {
-    axis: usize,
-    counts: bool,
-    travel: Travel,
-}
-
-/// The smaller of two numbers that are no NaN: one instruction, where `f64::min` needs several.
-#[inline]
-fn smaller(a: f64, b: f64) -> f64 {
-    if b < a { b } else { a }
 }
 
 fn same_place(a: &JudgedSetting, b: &JudgedSetting) -> bool {

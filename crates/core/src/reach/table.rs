@@ -3,9 +3,11 @@ use std::sync::atomic::{AtomicUsize, Ordering};
 use nalgebra::Matrix3;
 use rayon::prelude::*;
 
+use super::stretch::Stretch;
 use super::{Judge, Verdict};
-use crate::frames::{Hkl, Vector};
+use crate::frames::Hkl;
 use crate::instrument::Setting;
+use crate::lanes::widest;
 use crate::pace::Pace;
 
 /// The reflections that are wanted, in columns of equal length.
@@ -77,19 +79,8 @@ impl ReachTable {
             .zip(verdict.par_chunks_mut(STRETCH))
             .zip(readings_deg.par_chunks_mut(STRETCH * axis_count.max(1)))
             .zip(wanted.hkl.par_chunks(STRETCH))
-            .all(|(((d, verdict), readings), hkl)| {
-                let mut attempts = judge.solver().attempts();
-                for (i, hkl) in hkl.iter().enumerate() {
-                    let node = Vector::from_raw(ub * hkl.to_vector());
-                    d[i] = 1.0 / node.norm();
-                    let judgement = judge.verdict_in(node, wavelength_angstrom, &mut attempts);
-                    verdict[i] = judgement.verdict;
-                    if judgement.verdict.is_reachable()
-                        && let Some(setting) = judgement.setting.and_then(|s| s.setting)
-                    {
-                        readings[i * axis_count..(i + 1) * axis_count].copy_from_slice(setting.readings_deg());
-                    }
-                }
+            .all(|(((d_angstrom, verdict), readings_deg), hkl)| {
+                widest(Stretch { judge, ub, wavelength_angstrom, axis_count, hkl, d_angstrom, verdict, readings_deg });
                 let finished = done.fetch_add(hkl.len(), Ordering::Relaxed) + hkl.len();
                 pace.proceed(finished, count)
             });
@@ -152,6 +143,7 @@ mod tests {
     use super::*;
     use crate::aim::{Preference, Rule};
     use crate::crystal::UnitCell;
+    use crate::frames::Vector;
     use crate::instrument::built_in_machine;
     use crate::pace::Unhurried;
 

@@ -1,3 +1,4 @@
+use crate::aim::OutsideSphere;
 use crate::instrument::Instrument;
 
 /// Whether a reflection or a setting can be measured, and if not why: the reason is a value, not a text.
@@ -78,5 +79,11 @@ impl Verdict {
                 Some(by_deg)
             }
         }
+    }
+}
+
+impl From<OutsideSphere> for Verdict {
+    fn from(outside: OutsideSphere) -> Self {
+        Self::OutsideSphere { longest_wavelength_angstrom: outside.longest_wavelength_angstrom }
     }
 }
