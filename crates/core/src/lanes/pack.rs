@@ -39,7 +39,10 @@ pub(crate) fn widest<W: Wide>(work: W) -> W::Output {
             self.0.work(Pack { simd, numbers: simd.splat_f64s(0.0) })
         }
     }
-    Arch::new().dispatch(Packed(work))
+    match Arch::new() {
+        Arch::Scalar => work.work(0.0),
+        wide => wide.dispatch(Packed(work)),
+    }
 }
 
 macro_rules! arithmetic {
@@ -136,7 +139,10 @@ impl<S: Simd> Real for Pack<S> {
 
     #[inline(always)]
     fn choose(mask: PackMask<S>, yes: Self, no: Self) -> Self {
-        Self { numbers: mask.simd.select_f64s(mask.bits, yes.numbers, no.numbers), ..no }
+        // Through integers, because the instruction set's own way for numbers is not inlined.
+        let simd = mask.simd;
+        let (yes, no) = (simd.transmute_u64s_f64s(yes.numbers), simd.transmute_u64s_f64s(no.numbers));
+        Self { simd, numbers: simd.transmute_f64s_u64s(simd.select_u64s(mask.bits, yes, no)) }
     }
 }
 

@@ -26,6 +26,7 @@ pub struct ReachTable {
     wanted: Wanted,
     d_angstrom: Vec<f64>,
     verdict: Vec<Verdict>,
+    /// Of the setting chosen, `axis_count` for each row; zeros where it is not reachable.
     readings_deg: Vec<f64>,
     axis_count: usize,
     wavelength_angstrom: f64,
@@ -71,8 +72,9 @@ impl ReachTable {
     ) -> Result<Self, Stopped> {
         let count = wanted.hkl.len();
         let mut d_angstrom = vec![0.0; count];
-        let mut verdict = vec![Verdict::Reachable; count];
-        let mut readings_deg = vec![f64::NAN; count * axis_count];
+        // Filled on every thread, because the first touch of so much memory takes as long as the angles.
+        let mut verdict: Vec<Verdict> = rayon::iter::repeat_n(Verdict::Reachable, count).collect();
+        let mut readings_deg = vec![0.0; count * axis_count];
         let done = AtomicUsize::new(0);
         let go_on = d_angstrom
             .par_chunks_mut(STRETCH)
