@@ -8,10 +8,14 @@
 
 mod arctangent;
 mod pack;
+#[cfg(test)]
+mod tests;
 
 use std::fmt::Debug;
 use std::ops::{Add, BitAnd, BitOr, BitXor, Div, Mul, Neg, Not, Sub};
 
+#[cfg(test)]
+pub(crate) use pack::every_width;
 pub(crate) use pack::{Wide, widest};
 
 /// A number, or several side by side that go through the same formula. The methods give plain IEEE arithmetic; what they

@@ -28,21 +28,32 @@ pub(crate) trait Wide {
     fn work<T: Real>(self, zero: T) -> Self::Output;
 }
 
+struct Packed<W>(W);
+
+impl<W: Wide> WithSimd for Packed<W> {
+    type Output = W::Output;
+
+    #[inline(always)]
+    fn with_simd<S: Simd>(self, simd: S) -> W::Output {
+        self.0.work(Pack { simd, numbers: simd.splat_f64s(0.0) })
+    }
+}
+
 /// Does a piece of work with the widest numbers that this computer has; which these are is found out as it runs.
 pub(crate) fn widest<W: Wide>(work: W) -> W::Output {
-    struct Packed<W>(W);
-    impl<W: Wide> WithSimd for Packed<W> {
-        type Output = W::Output;
-
-        #[inline(always)]
-        fn with_simd<S: Simd>(self, simd: S) -> W::Output {
-            self.0.work(Pack { simd, numbers: simd.splat_f64s(0.0) })
-        }
-    }
     match Arch::new() {
         Arch::Scalar => work.work(0.0),
         wide => wide.dispatch(Packed(work)),
     }
+}
+
+/// Does a piece of work at every width that this computer has, one number at a time first.
+#[cfg(test)]
+pub(crate) fn every_width<W: Wide>(mut work: impl FnMut() -> W) -> Vec<W::Output> {
+    let mut all = vec![work().work(0.0), Simd::vectorize(pulp::Scalar, Packed(work())), widest(work())];
+    #[cfg(target_arch = "x86_64")]
+    all.extend(pulp::x86::V3::try_new().map(|simd| Simd::vectorize(simd, Packed(work()))));
+    all
 }
 
 macro_rules! arithmetic {

@@ -1,3 +1,7 @@
+#[cfg(test)]
+#[allow(clippy::unwrap_used)]
+mod tests;
+
 use nalgebra::Matrix3;
 
 use super::{Judge, Verdict};
