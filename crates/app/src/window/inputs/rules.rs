@@ -132,7 +132,7 @@ fn kind(ui: &mut Ui, rule: &mut Rule, machine: Option<&Instrument>, surface: boo
         other => other.word().to_owned(),
     };
     let own = named(rule);
-    let combo = ComboBox::from_id_salt(("rule", i)).width(170.0).selected_text(own.clone());
+    let combo = ComboBox::from_id_salt(("rule", i)).width(170.0).height(420.0).selected_text(own.clone());
     let shown = combo.show_ui(ui, |ui| {
         for (name, offer) in machine.and_then(|machine| offers(machine, surface)).into_iter().flatten() {
             match offer {

@@ -121,3 +121,26 @@ fn the_slots_tell_which_spare_angles_the_rules_fill() {
     press(&mut harness, "Remove rule 1");
     assert!(harness.query_by_label("Spare angle 1: empty: one more rule is wanted").is_some());
 }
+
+#[test]
+fn every_rule_can_be_chosen_that_the_machine_allows() {
+    let mut harness = demo(0);
+    for name in ["bisecting about chi", "hold chi", "azimuth", "freest azimuth", "tie", "bisecting"] {
+        // A choice made without a pointer leaves the list open.
+        if harness.query_by_label(name).is_none() {
+            press(&mut harness, "Rule 1");
+        }
+        press(&mut harness, name);
+        let rule = harness.state().session().rules[0].clone();
+        assert!(name.contains(rule.word()), "{name}: {rule:?}");
+        let problems = &harness.state().results().problems;
+        assert!(problems.is_empty() || name == "hold chi", "{name}: {problems:?}");
+    }
+    if harness.query_by_label("azimuth").is_none() {
+        press(&mut harness, "Rule 1");
+    }
+    press(&mut harness, "azimuth");
+    enter(&mut harness, "Azimuth, degrees", "25");
+    enter(&mut harness, "Rule 1 reference", "1 0 0");
+    assert!(harness.state().results().problems.is_empty());
+}
