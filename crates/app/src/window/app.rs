@@ -115,7 +115,8 @@ impl App {
 
     /// Whether all work is done.
     pub fn is_settled(&self) -> bool {
-        self.results.busy.is_none() && !self.files.is_waiting() && self.seen.as_ref() == Some(&self.opened.session)
+        let rests = self.results.busy.is_none() && !self.files.is_waiting() && !self.views.azimuth.is_waiting();
+        rests && self.seen.as_ref() == Some(&self.opened.session)
     }
 
     /// Takes in what workers have found and asks anew where the document has changed.

@@ -1,7 +1,7 @@
 use std::sync::Arc;
 
 use ringwright_core::session::{FieldProblem, MachineLibrary, Resolved, Session};
-use ringwright_core::work::{self, Oriented, WorkError};
+use ringwright_core::work::{self, AzimuthView, Oriented, WorkError};
 
 use super::desk::Ticket;
 use super::shared::{Plan, Reach, Results};
@@ -109,6 +109,10 @@ impl Chain {
         if let Some(reach) = self.reach.as_ref().filter(|reach| Arc::ptr_eq(&reach.table, &table)) {
             return Ok(Arc::clone(reach));
         }
+        let azimuth = match AzimuthView::new(resolved, &oriented.orientation, None, ticket) {
+            Err(stopped @ WorkError::Stopped(_)) => return Err(stopped),
+            made => made.map_err(|error| error.to_string()),
+        };
         let reach = Arc::new(Reach {
             cell: resolved.cell.clone(),
             space_group: resolved.space_group.clone(),
@@ -118,6 +122,7 @@ impl Chain {
             rules: resolved.rules.clone(),
             preference: resolved.preference.clone(),
             judge: work::judge(resolved, &oriented.orientation.ub)?,
+            azimuth,
             table,
         });
         self.reach = Some(Arc::clone(&reach));

@@ -8,7 +8,7 @@ use ringwright_core::orient::Orientation;
 use ringwright_core::reach::{Judge, ReachTable, Settings};
 use ringwright_core::route::DriveList;
 use ringwright_core::session::{FieldProblem, Resolved};
-use ringwright_core::work::Oriented;
+use ringwright_core::work::{AzimuthView, Oriented};
 
 /// The reflection that every view shows: one selection for table, picture and dials.
 #[derive(Debug, Clone, Copy, Default, PartialEq)]
@@ -39,6 +39,8 @@ pub struct Reach {
     pub preference: Preference,
     /// The judge, for every setting of one reflection.
     pub judge: Judge,
+    /// Every reflection along its azimuth, or why this machine has none.
+    pub azimuth: Result<AzimuthView, String>,
     /// One row for each wanted reflection.
     pub table: Arc<ReachTable>,
 }

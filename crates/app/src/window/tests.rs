@@ -1,5 +1,6 @@
 //! The window driven through its accessible labels, without a screen.
 
+mod azimuth;
 mod editing;
 mod files;
 mod layout;

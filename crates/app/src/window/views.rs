@@ -1,6 +1,7 @@
-//! What the window shows of the results: the lattice in three dimensions, the table of reflections, the dials of the
-//! selected reflection. Views draw only from one [`super::Reach`] and change nothing but the selection and themselves.
+//! What the window shows of the results: the lattice in three dimensions, the table of reflections, the azimuth and
+//! the dials of the selected reflection. Views draw only from one [`super::Reach`] and change nothing but the selection and themselves.
 
+mod azimuth;
 mod dials;
 mod lattice;
 mod legend;
@@ -12,6 +13,7 @@ mod table;
 #[allow(clippy::unwrap_used)]
 pub(super) mod test_renderer;
 
+pub use azimuth::AzimuthRibbon;
 pub use dials::axis_dials;
 pub use lattice::{LatticeView, ViewOptions};
 pub use legend::legend;

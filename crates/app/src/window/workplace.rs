@@ -13,7 +13,7 @@ use super::inputs::{self, Bench};
 use super::shared::{Picked, Results};
 use super::strip;
 use super::theme::{GAP, Tones};
-use super::views::{LatticeView, PickedSettings, ReflectionTable, ShownKinds, axis_dials};
+use super::views::{AzimuthRibbon, LatticeView, PickedSettings, ReflectionTable, ShownKinds, axis_dials};
 
 /// What the views keep from frame to frame.
 #[derive(Default)]
@@ -21,6 +21,7 @@ pub struct Views {
     pub(super) lattice: LatticeView,
     pub(super) table: ReflectionTable,
     pub(super) settings: PickedSettings,
+    pub(super) azimuth: AzimuthRibbon,
     pub(super) shown: ShownKinds,
 }
 
@@ -48,6 +49,7 @@ impl eframe::App for App {
         self.bottom(ui, &mut commands);
         self.left(ui, &mut commands);
         self.views.settings.update(self.results.reach.as_ref(), &self.picked);
+        self.views.azimuth.update(ui.ctx(), &self.results, &self.picked);
         self.right(ui, &mut commands);
         self.middle(ui);
         let file = self.opened.file().to_owned();
@@ -155,7 +157,7 @@ impl App {
                     chooser(ui, edits, results, picked);
                 });
                 edits.show_errors(ui, "reflection", &[]);
-                axis_dials(ui, results, picked, &mut views.settings);
+                axis_dials(ui, results, picked, &views.azimuth, &mut views.settings);
                 if let Some(hkl) = picked.hkl.filter(|_| views.settings.shown_setting().is_some()) {
                     ui.add_space(GAP);
                     press(ui, Command::AddPredictedPeak(hkl), commands);

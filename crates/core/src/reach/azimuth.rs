@@ -151,7 +151,11 @@ impl AzimuthFamily {
         psi_rad: f64,
         found: &mut dyn FnMut(JudgedSetting),
     ) -> Result<(), NoSetting> {
-        self.road.each_attempt_at(q_in_head, wavelength_angstrom, psi_rad, &mut |attempt| found(judge.judge(&attempt)))
+        let cone = judge.cone_verdict(q_in_head, wavelength_angstrom);
+        self.road.each_attempt_at(q_in_head, wavelength_angstrom, psi_rad, &mut |attempt| {
+            let judged = judge.judge(&attempt);
+            found(JudgedSetting { verdict: cone.unwrap_or(judged.verdict), ..judged });
+        })
     }
 
     /// Allowed, or why not, for the best setting at an azimuth in radians.
@@ -165,10 +169,10 @@ impl AzimuthFamily {
         wavelength_angstrom: f64,
         psi_rad: f64,
     ) -> Result<Option<JudgedSetting>, NoSetting> {
-        if let Some(verdict) = judge.cone_verdict(q_in_head, wavelength_angstrom) {
+        if judge.cone_verdict(q_in_head, wavelength_angstrom).is_some() {
             let mut first = None;
             self.at(judge, q_in_head, wavelength_angstrom, psi_rad, &mut |judged| {
-                first.get_or_insert(JudgedSetting { verdict, ..judged });
+                first.get_or_insert(judged);
             })?;
             return Ok(first);
         }
@@ -219,10 +223,9 @@ impl Question<'_> {
             let best = self.family.verdict_at(self.judge, self.q, self.wavelength, psi)?;
             return Ok(vec![best.map_or(Verdict::CannotMake { by_deg: 180.0 }, |judged| judged.verdict)]);
         }
-        let cone = self.judge.cone_verdict(self.q, self.wavelength);
         let mut states = Vec::with_capacity(8);
         self.family.at(self.judge, self.q, self.wavelength, psi, &mut |judged| {
-            states.push(cone.unwrap_or(judged.verdict));
+            states.push(judged.verdict);
         })?;
         Ok(states)
     }

@@ -117,3 +117,26 @@ fn a_machine_with_no_spare_angle_has_no_family() {
     let reference = ron::from_str("Direct(u: 0, v: 0, w: 1)").unwrap();
     assert!(matches!(AzimuthFamily::new(&instrument, &[], &crystal, &reference), Err(RuleError::NotCovered(_))));
 }
+
+/// The cone about the direct beam refuses whatever the azimuth, one setting as the ribbon.
+#[test]
+fn in_the_direct_beam_no_azimuth_is_allowed() {
+    let mut bench = bench(CASES[0], false);
+    let instrument = built_in_machine("eulerian-four-circle").unwrap();
+    let mut described = instrument.description().clone();
+    described.direct_beam_half_angle_deg = ron::from_str("20.0").unwrap();
+    let instrument = Instrument::new(described).unwrap();
+    let crystal = CrystalOnHead { ub: Matrix3::identity() * 0.1, surface: None };
+    bench.judge = Judge::for_crystal(&instrument, bench.family.rules(), &Preference::default(), &crystal).unwrap();
+    let q = Vector::from_raw(nalgebra::Vector3::new(0.2, 0.1, 0.1));
+    let mut count = 0;
+    bench
+        .family
+        .at(&bench.judge, q, WAVELENGTH, 0.3, &mut |judged| {
+            assert!(matches!(judged.verdict, Verdict::InDirectBeam { .. }), "{:?}", judged.verdict);
+            count += 1;
+        })
+        .unwrap();
+    assert!(count > 1);
+    assert!(bench.family.windows(&bench.judge, q, WAVELENGTH).unwrap().any_deg.is_empty());
+}

@@ -53,7 +53,10 @@ fn surface(ui: &mut Ui, bench: &mut Bench<'_>) {
         row_name(ui, "Surface");
         let mut has = bench.session.crystal.surface.is_some();
         let word = if has { "" } else { "none" };
-        if ui.checkbox(&mut has, word).changed() {
+        let tick = ui.checkbox(&mut has, word);
+        // Ticked it has no words beside it, only the normal.
+        ui.ctx().accesskit_node_builder(tick.id, |node| node.set_label("The crystal has a surface"));
+        if tick.changed() {
             let index = |value| Index::new(value).ok();
             let normal = || Some(Reference::Reciprocal { h: index(0.0)?, k: index(0.0)?, l: index(1.0)? });
             bench.session.crystal.surface = if has { normal() } else { None };

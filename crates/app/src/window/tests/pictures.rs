@@ -76,7 +76,7 @@ type Act = fn(&mut Harness<'static, App>);
 #[test]
 fn pictures_of_other_states_are_drawn() {
     let folder = std::env::var_os("RINGWRIGHT_SHOTS");
-    let states: [(&str, Act); 12] = [
+    let states: [(&str, Act); 16] = [
         ("refused", |harness| {
             enter(harness, "a, Å", "-3");
             enter(harness, "Peak 1 chi, degrees", "1,5");
@@ -111,6 +111,10 @@ fn pictures_of_other_states_are_drawn() {
             enter(harness, "b, Å", "6.9");
             perform(harness, Command::SaveAsByPath);
         }),
+        ("azimuth-light", |harness| turn(harness, 0.62)),
+        ("azimuth-dark", |harness| turn(harness, 0.3)),
+        ("azimuth-surface-light", grazing),
+        ("azimuth-surface-dark", grazing),
         ("export", |harness| perform(harness, Command::Export)),
         ("unsaved", |harness| {
             enter(harness, "b, Å", "6.3");
@@ -121,7 +125,8 @@ fn pictures_of_other_states_are_drawn() {
         if folder.is_none() && i > 0 {
             continue;
         }
-        let theme = if i % 2 == 0 { Theme::Light } else { Theme::Dark };
+        let dark = name.ends_with("dark") || (i % 2 == 1 && !name.ends_with("light"));
+        let theme = if dark { Theme::Dark } else { Theme::Light };
         let mut harness = window(&Start::Demo(DEMOS[0].name), LAPTOP, theme);
         let before = harness.render().unwrap();
         reach_state(&mut harness);
@@ -130,9 +135,29 @@ fn pictures_of_other_states_are_drawn() {
         let image = harness.render().unwrap();
         assert!(image != before, "{name} looks different");
         if let Some(folder) = &folder {
+            std::fs::create_dir_all(folder).unwrap();
             image.save(Path::new(folder).join(format!("state-{name}.png"))).unwrap();
         }
     }
+}
+
+/// Turns a reflection by hand to a part of the ribbon's width.
+fn turn(harness: &mut Harness<'static, App>, part: f32) {
+    let hkl = harness.state().results().current_plan().unwrap().list.rows[2].hkl;
+    perform(harness, Command::Select(hkl));
+    let rect = harness.get_by_label("Azimuth ribbon").rect();
+    let at = rect.lerp_inside(vec2(part, 0.4));
+    harness.drag_at(at);
+    harness.step();
+    harness.drop_at(at);
+    harness.run_steps(60);
+}
+
+/// A crystal with a surface, so that there are several reasons why not.
+fn grazing(harness: &mut Harness<'static, App>) {
+    harness.state_mut().opened.session.crystal.surface = Some(ron::from_str("Reciprocal(h: 1, k: 0, l: 1)").unwrap());
+    settle(harness);
+    turn(harness, 0.62);
 }
 
 fn list(nodes: &[[f64; 3]]) -> ringwright_core::session::Targets {

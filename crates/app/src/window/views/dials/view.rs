@@ -5,6 +5,7 @@ use ringwright_core::instrument::Axis;
 use ringwright_core::reach::JudgedSetting;
 
 use super::super::super::{Picked, Reach, Results};
+use super::super::azimuth::AzimuthRibbon;
 use super::super::number::{fixed, indices};
 use super::super::settings::PickedSettings;
 
@@ -12,7 +13,13 @@ use super::gauge::{Reading, gauge};
 use super::list::{in_words, settings_list};
 
 /// The selected reflection: what it is, its settings, and the dials of the one that is shown.
-pub fn axis_dials(ui: &mut Ui, results: &Results, picked: &Picked, settings: &mut PickedSettings) {
+pub fn axis_dials(
+    ui: &mut Ui,
+    results: &Results,
+    picked: &Picked,
+    azimuth: &AzimuthRibbon,
+    settings: &mut PickedSettings,
+) {
     let (Some(reach), Some(hkl)) = (&results.reach, picked.hkl) else {
         return empty(ui, results.reach.is_some());
     };
@@ -30,7 +37,12 @@ pub fn axis_dials(ui: &mut Ui, results: &Results, picked: &Picked, settings: &mu
         ));
         return;
     }
-    let Some(shown) = settings.shown().copied() else { return };
+    // Above what grows and shrinks with the setting: it must not move under the pointer.
+    azimuth.show(ui, reach, hkl, settings);
+    let Some(shown) = settings.shown().copied() else {
+        ui.label("The machine has no setting at this azimuth.");
+        return;
+    };
     ui.label(why(reach, settings, &shown));
     ui.add_space(4.0);
     ui.horizontal_wrapped(|ui| {
@@ -73,6 +85,10 @@ fn title(ui: &mut Ui, reach: &Reach, hkl: Hkl) {
 fn why(reach: &Reach, settings: &PickedSettings, shown: &JudgedSetting) -> String {
     let (number, all) = (settings.shown_index() + 1, settings.all().len());
     let first = settings.shown_index() == 0;
+    if let Some(psi_deg) = settings.by_hand_deg() {
+        let what = in_words(shown, reach, false);
+        return format!("Turned by hand to ψ {}°: setting {number} of {all}, {what}.", fixed(psi_deg, 2));
+    }
     if first && !settings.has_chosen() {
         return format!("None of {all} settings is allowed. Nearest miss: {}.", in_words(shown, reach, false));
     }

@@ -242,6 +242,10 @@ fn caption(reach: &Reach, settings: &PickedSettings, shown: ShownKinds, setting:
     let readings: Vec<String> =
         names.zip(setting.readings_deg()).map(|(name, deg)| format!("{name} {}°", fixed(*deg, 2))).collect();
     match settings.shown_setting() {
+        Some(_) if settings.by_hand_deg().is_some() => {
+            let psi_deg = settings.by_hand_deg().unwrap_or_default();
+            format!("Lab frame turned by hand to ψ {}°: {}", fixed(psi_deg, 2), readings.join(", "))
+        }
         Some(_) => {
             let (i, all) = (settings.shown_index() + 1, settings.all().len());
             format!("Lab frame at setting {i} of {all}: {}", readings.join(", "))

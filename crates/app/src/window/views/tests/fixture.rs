@@ -10,7 +10,11 @@ use ringwright_core::frames::{Hkl, Rotation};
 use ringwright_core::instrument::{Setting, built_in_machine};
 use ringwright_core::orient::Orientation;
 use ringwright_core::pace::Unhurried;
+use ringwright_core::quantity::WavelengthInAngstrom;
+use ringwright_core::radiation::Radiation;
 use ringwright_core::reach::{Judge, ReachTable, Wanted};
+use ringwright_core::session::{Resolved, Targets};
+use ringwright_core::work::AzimuthView;
 
 use super::super::test_renderer::SoftwareRenderer;
 use super::super::*;
@@ -21,6 +25,7 @@ pub struct Workplace {
     pub results: Results,
     pub picked: Picked,
     pub settings: PickedSettings,
+    pub azimuth: AzimuthRibbon,
     pub shown: ShownKinds,
     pub lattice: LatticeView,
     pub table: ReflectionTable,
@@ -32,6 +37,7 @@ impl Workplace {
             results: Results { reach, ..Results::default() },
             picked: Picked::default(),
             settings: PickedSettings::default(),
+            azimuth: AzimuthRibbon::default(),
             shown: ShownKinds::default(),
             lattice: LatticeView::default(),
             table: ReflectionTable::default(),
@@ -56,7 +62,8 @@ impl Workplace {
 
     pub fn dials_ui(&mut self, ui: &mut Ui) {
         self.begin();
-        axis_dials(ui, &self.results, &self.picked, &mut self.settings);
+        self.azimuth.update(ui.ctx(), &self.results, &self.picked);
+        axis_dials(ui, &self.results, &self.picked, &self.azimuth, &mut self.settings);
     }
 
     pub fn reach(&self) -> Arc<Reach> {
@@ -116,6 +123,21 @@ pub fn reach(machine: &str, cell: UnitCell, symbol: &str, d_min: f64, wavelength
     let wanted = Wanted { absent: absent.collect(), hkl: columns.hkl.into_iter().map(Hkl::from).collect() };
     let axes = instrument.axis_count();
     let table = ReachTable::judge(wanted, &orientation.ub, wavelength_angstrom, &judge, axes, &Unhurried).unwrap();
+    let inputs = Resolved {
+        cell: cell.clone(),
+        space_group: space_group.clone(),
+        radiation: Radiation::XrayWavelength { angstrom: WavelengthInAngstrom::new(wavelength_angstrom).unwrap() },
+        wavelength_angstrom,
+        instrument: instrument.clone(),
+        peaks: Vec::new(),
+        surface: None,
+        rules: rules.clone(),
+        preference: preference.clone(),
+        targets: Targets::List(Vec::new()),
+        kept_orientation: None,
+        notes: Vec::new(),
+    };
+    let azimuth = AzimuthView::new(&inputs, &orientation, None, &Unhurried).map_err(|error| error.to_string());
     Arc::new(Reach {
         cell,
         space_group,
@@ -125,6 +147,7 @@ pub fn reach(machine: &str, cell: UnitCell, symbol: &str, d_min: f64, wavelength
         rules,
         preference,
         judge,
+        azimuth,
         table: table.into(),
     })
 }

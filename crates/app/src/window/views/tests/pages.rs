@@ -11,7 +11,8 @@ use crate::window::Reach;
 
 fn everything(ui: &mut Ui, place: &mut Workplace) {
     place.begin();
-    let Workplace { results, picked, settings, shown, lattice, table } = place;
+    let Workplace { results, picked, settings, shown, lattice, table, azimuth } = place;
+    azimuth.update(ui.ctx(), results, picked);
     egui::Panel::bottom("table")
         .resizable(false)
         .exact_size(250.0)
@@ -19,7 +20,7 @@ fn everything(ui: &mut Ui, place: &mut Workplace) {
     egui::Panel::right("dials")
         .resizable(false)
         .exact_size(560.0)
-        .show(ui, |ui| axis_dials(ui, results, picked, settings));
+        .show(ui, |ui| axis_dials(ui, results, picked, azimuth, settings));
     egui::CentralPanel::default().show(ui, |ui| lattice.show(ui, results, picked, settings, shown));
 }
 
