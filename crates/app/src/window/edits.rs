@@ -3,7 +3,7 @@
 
 use std::collections::BTreeMap;
 
-use egui::{Align2, Label, Response, RichText, Sense, Stroke, TextEdit, Ui, vec2};
+use egui::{Align2, Label, Response, RichText, Sense, Stroke, StrokeKind, TextEdit, Ui, vec2};
 use ringwright_core::quantity::QuantityError;
 use ringwright_core::session::FieldProblem;
 
@@ -70,6 +70,23 @@ impl Edits {
         }
     }
 
+    /// What is wrong with the value of a field, or with what it is a part of.
+    pub fn misfit(&self, path: &str) -> Option<&str> {
+        self.marked.iter().find(|(marked, _)| is_under(path, marked)).map(|(_, what)| what.as_str())
+    }
+
+    /// Tells of a list to choose from whether one of its fields does not fit, as a field of text does.
+    pub fn mark_list(&self, ui: &Ui, list: &Response, paths: &[&str]) {
+        let Some(what) = paths.iter().find_map(|path| self.misfit(path)) else { return };
+        let stroke = Stroke::new(1.5, Tones::in_ui(ui).bad);
+        ui.painter().rect_stroke(list.rect, ui.visuals().widgets.inactive.corner_radius, stroke, StrokeKind::Inside);
+        ui.ctx().accesskit_node_builder(list.id, |node| {
+            node.set_invalid(egui::accesskit::Invalid::True);
+            node.set_description(what);
+        });
+        list.clone().on_hover_text(what);
+    }
+
     /// A field of text for a value that is shown as `shown`. Gives the value when a text that differs has been taken.
     pub fn field<T>(
         &mut self,
@@ -81,8 +98,7 @@ impl Edits {
         let id = ui.make_persistent_id(("field", field.path));
         let pending = self.pending.get(field.path);
         let error = pending.and_then(|p| p.error.clone());
-        let misfit = self.marked.iter().find(|(path, _)| is_under(field.path, path)).map(|(_, what)| what.clone());
-        let told = error.clone().or(misfit);
+        let told = error.clone().or_else(|| self.misfit(field.path).map(str::to_owned));
         let mut text = pending.map_or_else(|| shown.to_owned(), |p| p.text.clone());
         let tones = Tones::in_ui(ui);
         let response = ui

@@ -1,4 +1,4 @@
-use egui::{Button, ComboBox, CornerRadius, Sense, Stroke, StrokeKind, Ui, vec2};
+use egui::{Button, ComboBox, CornerRadius, Response, Sense, Stroke, StrokeKind, Ui, vec2};
 use ringwright_core::aim::{Reference, Rule};
 use ringwright_core::instrument::{AxisName, Instrument};
 use ringwright_core::quantity::{Component, Degrees, Index};
@@ -19,7 +19,10 @@ pub fn show(ui: &mut Ui, bench: &mut Bench<'_>) {
         let before = std::mem::discriminant(rule);
         ui.horizontal(|ui| {
             row_name(ui, if i == 0 { "Rule" } else { "and" });
-            kind(ui, rule, bench.instrument, surface, i);
+            let list = kind(ui, rule, bench.instrument, surface, i);
+            // The axis of these two stands in the list itself.
+            let own = ["", ".Hold.axis", ".BisectingAbout.axis"].map(|field| format!("rules[{i}]{field}"));
+            bench.edits.mark_list(ui, &list, &own.each_ref().map(String::as_str));
             let button = ui.add(Button::new("✕").min_size(vec2(22.0, 22.0)));
             ui.ctx().accesskit_node_builder(button.id, |node| node.set_label(format!("Remove rule {}", i + 1)));
             if button.clicked() {
@@ -32,6 +35,7 @@ pub fn show(ui: &mut Ui, bench: &mut Bench<'_>) {
         let mut editor =
             Editor { edits: bench.edits, machine: bench.instrument, path: format!("rules[{i}]"), number: i + 1 };
         editor.fields(ui, rule);
+        bench.edits.show_errors(ui, &format!("rules[{i}]"), &bench.results.problems);
     }
     if let Some(i) = remove {
         bench.edits.forget_under("rules");
@@ -124,7 +128,7 @@ fn default_reference() -> Option<Reference> {
     Some(Reference::Reciprocal { h: index(0.0)?, k: index(0.0)?, l: index(1.0)? })
 }
 
-fn kind(ui: &mut Ui, rule: &mut Rule, machine: Option<&Instrument>, surface: bool, i: usize) {
+fn kind(ui: &mut Ui, rule: &mut Rule, machine: Option<&Instrument>, surface: bool, i: usize) -> Response {
     let named = |rule: &Rule| match rule {
         Rule::Hold { axis, .. } => format!("hold {axis}"),
         Rule::BisectingAbout { axis } => format!("bisecting about {axis}"),
@@ -146,6 +150,7 @@ fn kind(ui: &mut Ui, rule: &mut Rule, machine: Option<&Instrument>, surface: boo
         }
     });
     super::super::name_combo(ui, &shown.response, &format!("Rule {}", i + 1));
+    shown.response
 }
 
 struct Editor<'a> {
@@ -182,7 +187,7 @@ impl Editor<'_> {
             Rule::Freest { reference } => self.reference(ui, "Freest.reference", reference),
             Rule::Tie { axis, to, factor, offset_deg } => {
                 self.row(ui, |editor, ui| {
-                    editor.axis(ui, "tied axis", axis);
+                    editor.axis(ui, "tied axis", "Tie.axis", axis);
                     ui.label("=");
                     let path = format!("{}.Tie.factor", editor.path);
                     let field = Field { path: &path, label: "Factor of the tie", width: 44.0, hint: "" };
@@ -190,7 +195,7 @@ impl Editor<'_> {
                         *factor = new;
                     }
                     ui.label("×");
-                    editor.axis(ui, "axis it follows", to);
+                    editor.axis(ui, "axis it follows", "Tie.to", to);
                 });
                 self.row(ui, |editor, ui| {
                     editor.angle(ui, "plus", "Tie.offset_deg", "Offset of the tie, degrees", offset_deg)
@@ -215,7 +220,7 @@ impl Editor<'_> {
         ui.label("°");
     }
 
-    fn axis(&mut self, ui: &mut Ui, what: &str, name: &mut AxisName) {
+    fn axis(&mut self, ui: &mut Ui, what: &str, field: &str, name: &mut AxisName) {
         let id = (self.path.clone(), what.to_owned());
         let shown = ComboBox::from_id_salt(id).width(64.0).selected_text(name.as_str()).show_ui(ui, |ui| {
             let axes = self.machine.into_iter().flat_map(|machine| machine.axes());
@@ -224,6 +229,7 @@ impl Editor<'_> {
             }
         });
         super::super::name_combo(ui, &shown.response, &format!("Rule {}, {what}", self.number));
+        self.edits.mark_list(ui, &shown.response, &[&format!("{}.{field}", self.path)]);
     }
 
     fn reference(&mut self, ui: &mut Ui, field: &str, reference: &mut Reference) {

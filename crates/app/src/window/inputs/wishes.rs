@@ -24,7 +24,10 @@ pub fn show(ui: &mut Ui, bench: &mut Bench<'_>) {
     let summary = bench.session.rules.iter().map(rules::words).collect::<Vec<_>>().join(", ");
     card(ui, "How to aim", state, &summary, |ui| {
         rules::show(ui, bench);
-        bench.show_errors(ui, "rules");
+        // Those of one rule stand below it.
+        for problem in bench.results.problems.iter().filter(|problem| problem.path == "rules") {
+            super::super::edits::error_line(ui, &problem.message);
+        }
         if let Some(error) = &unmet {
             super::super::edits::error_line(ui, error);
         }

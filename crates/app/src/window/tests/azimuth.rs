@@ -202,6 +202,16 @@ fn without_a_spare_angle_the_reason_stands_in_its_place() {
     );
 }
 
+/// c* is what ψ counts from unless a rule says otherwise.
+#[test]
+fn along_the_reference_the_reason_stands_in_its_place() {
+    let mut harness = demo(0);
+    perform(&mut harness, Command::Select(Hkl::new(0.0, 0.0, 4.0)));
+    assert!(harness.query_by_label(RIBBON).is_none());
+    assert!(harness.query_by_label_contains("ψ counts from h k l = 0 0 1, and that is parallel to Q").is_some());
+    assert_eq!(gauges(&harness).len(), 4, "the setting under the rules is still shown");
+}
+
 fn kept() -> Option<ringwright_core::session::OrientationDocument> {
     let c = |v: f64| ringwright_core::quantity::Component::new(v).unwrap();
     let u = ((c(1.0), c(0.0), c(0.0)), (c(0.0), c(1.0), c(0.0)), (c(0.0), c(0.0), c(1.0)));

@@ -1,3 +1,5 @@
+use egui_kittest::kittest::NodeT;
+use ringwright_core::aim::Rule;
 use ringwright_core::session::{CrystalDocument, Session};
 
 use super::*;
@@ -143,4 +145,42 @@ fn every_rule_can_be_chosen_that_the_machine_allows() {
     enter(&mut harness, "Azimuth, degrees", "25");
     enter(&mut harness, "Rule 1 reference", "1 0 0");
     assert!(harness.state().results().problems.is_empty());
+}
+
+/// What a screen reader says is wrong with a field.
+fn wrong(harness: &Harness<'_, App>, label: &str) -> Option<String> {
+    let data = harness.get_by_label(label).accesskit_node().data().clone();
+    data.invalid().map(|_| data.description().unwrap_or_default().to_owned())
+}
+
+#[test]
+fn a_rule_that_does_not_fit_is_told_at_its_field_and_everything_else_stays() {
+    let mut harness = demo(0);
+    let reach = harness.state().results().reach.clone().unwrap();
+    let cases = [
+        (r#"Tie(axis: "omega", to: "omega", factor: 0.5, offset_deg: 0)"#, "Rule 1, axis it follows"),
+        (r#"Tie(axis: "omega", to: "two_theta", factor: 0, offset_deg: 0)"#, "Factor of the tie"),
+        (r#"Hold(axis: "two_theta", at_deg: 0)"#, "Rule 1"),
+        ("Azimuth(reference: Reciprocal(h: 0, k: 0, l: 0), at_deg: 20)", "Rule 1 reference"),
+        ("Freest(reference: Direct(u: 0, v: 0, w: 0))", "Rule 1 reference"),
+    ];
+    for (rule, field) in cases {
+        harness.state_mut().opened.session.rules = vec![ron::from_str(rule).unwrap()];
+        settle(&mut harness);
+        let problems = harness.state().results().problems.clone();
+        assert_eq!(problems.len(), 1, "{rule}: {problems:?}");
+        assert_eq!(
+            wrong(&harness, field).as_deref(),
+            Some(problems[0].message.as_str()),
+            "{rule}: {}",
+            problems[0].path
+        );
+        // At the field and in the strip at most: not once more at the foot of the card.
+        assert!(harness.query_all_by_label_contains(&problems[0].message).count() <= 2, "{rule}");
+        assert!(std::sync::Arc::ptr_eq(&reach, harness.state().results().reach.as_ref().unwrap()));
+    }
+    harness.state_mut().opened.session.rules = vec![Rule::Bisecting];
+    settle(&mut harness);
+    assert!(wrong(&harness, "Rule 1").is_none());
+    assert!(harness.state().results().current_plan().is_some());
 }

@@ -1,5 +1,7 @@
 use std::path::Path;
 
+use ringwright_core::frames::Hkl;
+
 use super::*;
 
 /// Every picture: both demos, a laptop's window, a desk's and the least one, light and dark.
@@ -111,8 +113,8 @@ fn pictures_of_other_states_are_drawn() {
             enter(harness, "b, Å", "6.9");
             perform(harness, Command::SaveAsByPath);
         }),
-        ("azimuth-light", |harness| turn(harness, 0.62)),
-        ("azimuth-dark", |harness| turn(harness, 0.3)),
+        ("azimuth-light", |harness| turn_planned(harness, 0.62)),
+        ("azimuth-dark", |harness| turn_planned(harness, 0.3)),
         ("azimuth-surface-light", grazing),
         ("azimuth-surface-dark", grazing),
         ("export", |harness| perform(harness, Command::Export)),
@@ -142,8 +144,7 @@ fn pictures_of_other_states_are_drawn() {
 }
 
 /// Turns a reflection by hand to a part of the ribbon's width.
-fn turn(harness: &mut Harness<'static, App>, part: f32) {
-    let hkl = harness.state().results().current_plan().unwrap().list.rows[2].hkl;
+fn turn(harness: &mut Harness<'static, App>, hkl: Hkl, part: f32) {
     perform(harness, Command::Select(hkl));
     let rect = harness.get_by_label("Azimuth ribbon").rect();
     let at = rect.lerp_inside(vec2(part, 0.4));
@@ -153,11 +154,23 @@ fn turn(harness: &mut Harness<'static, App>, part: f32) {
     harness.run_steps(60);
 }
 
+fn turn_planned(harness: &mut Harness<'static, App>, part: f32) {
+    let hkl = harness.state().results().current_plan().unwrap().list.rows[2].hkl;
+    turn(harness, hkl, part);
+}
+
 /// A crystal with a surface, so that there are several reasons why not.
 fn grazing(harness: &mut Harness<'static, App>) {
     harness.state_mut().opened.session.crystal.surface = Some(ron::from_str("Reciprocal(h: 1, k: 0, l: 1)").unwrap());
     settle(harness);
-    turn(harness, 0.62);
+    let reach = harness.state().results().reach.clone().unwrap();
+    let view = reach.azimuth.as_ref().unwrap();
+    let below = |hkl: Hkl| {
+        let steps = view.ribbon(hkl, 36).unwrap_or_default();
+        steps.iter().filter(|step| step.verdict.word() == "below_surface").count()
+    };
+    let hkl = reach.table.rows().map(|row| row.hkl).max_by_key(|hkl| below(*hkl)).unwrap();
+    turn(harness, hkl, 0.62);
 }
 
 fn list(nodes: &[[f64; 3]]) -> ringwright_core::session::Targets {

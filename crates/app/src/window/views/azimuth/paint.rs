@@ -4,7 +4,7 @@ use super::super::palette::{Kind, Palette, paint_mark};
 use super::content::Content;
 
 /// Height of the whole: marks of crossings, the band, and its scale.
-pub(super) const HEIGHT: f32 = 52.0;
+pub(super) const HEIGHT: f32 = 54.0;
 /// Room at either side, for half of the handle and of the outermost number.
 const SIDE: f32 = 8.0;
 const CROSSINGS: f32 = 11.0;
@@ -24,7 +24,7 @@ pub(super) struct Place {
 
 impl Place {
     pub fn in_rect(whole: Rect) -> Self {
-        let top = whole.top() + CROSSINGS + 1.0;
+        let top = whole.top() + CROSSINGS + 2.0;
         let left_top = pos2(whole.left() + SIDE, top);
         Self { band: Rect::from_min_size(left_top, vec2((whole.width() - 2.0 * SIDE).max(1.0), BAND)), whole }
     }
@@ -57,7 +57,7 @@ pub(super) fn ribbon(ui: &Ui, place: &Place, content: Option<&Content>, psi_deg:
             refused(painter, place.stretch(stretch.from_deg, stretch.to_deg), kind, palette.kind(kind));
         }
         for pair in content.refused.windows(2).filter(|pair| pair[0].to_deg == pair[1].from_deg) {
-            painter.vline(place.x(pair[1].from_deg), place.band.y_range(), Stroke::new(1.5, ui.visuals().panel_fill));
+            painter.vline(place.x(pair[1].from_deg), place.band.y_range(), Stroke::new(1.0, ui.visuals().panel_fill));
         }
         for &(from, to) in &content.allowed_deg {
             // A window narrower than a point is still seen.
@@ -76,27 +76,38 @@ pub(super) fn ribbon(ui: &Ui, place: &Place, content: Option<&Content>, psi_deg:
     }
 }
 
-/// Pale, hatched and marked: never only by colour.
+/// Pale, hatched and marked: never only by colour. Where a stretch is too narrow for a mark, the hatch tells the kind.
 fn refused(painter: &Painter, rect: Rect, kind: Kind, colour: Color32) {
     let inside = painter.with_clip_rect(rect.intersect(painter.clip_rect()));
     inside.rect_filled(rect, 0.0, colour.gamma_multiply(0.22));
-    let rise = rect.height();
-    let first = ((rect.left() - rise) / HATCH).floor() * HATCH;
-    let mut x = first;
-    while x < rect.right() {
-        inside.line_segment(
-            [pos2(x, rect.bottom()), pos2(x + rise, rect.top())],
-            Stroke::new(1.0, colour.gamma_multiply(0.5)),
-        );
-        x += HATCH;
+    let stroke = Stroke::new(1.0, colour.gamma_multiply(0.6));
+    let slant = match kind {
+        Kind::OverLimit => Some(rect.height()),
+        Kind::CannotMake => Some(-rect.height()),
+        Kind::DirectBeam => Some(0.0),
+        _ => None,
+    };
+    if let Some(slant) = slant {
+        let mut x = ((rect.left() - rect.height()) / HATCH).floor() * HATCH;
+        while x < rect.right() + rect.height() {
+            inside.line_segment([pos2(x, rect.bottom()), pos2(x + slant, rect.top())], stroke);
+            x += HATCH;
+        }
+    } else {
+        let mut y = rect.top() + 0.5 * HATCH;
+        while y < rect.bottom() {
+            inside.hline(rect.x_range(), y, stroke);
+            y += HATCH;
+        }
     }
-    let count = (rect.width() / MARKS).floor().max(1.0);
-    if rect.width() < 3.0 * MARK_RADIUS {
+    let radius = (0.5 * rect.width()).min(MARK_RADIUS);
+    if radius < 1.5 {
         return;
     }
+    let count = (rect.width() / MARKS).floor().max(1.0);
     for i in 0..count as usize {
         let centre = pos2(rect.left() + rect.width() * (i as f32 + 0.5) / count, rect.center().y);
-        paint_mark(&inside, centre, MARK_RADIUS, kind.mark(), colour);
+        paint_mark(&inside, centre, radius, kind.mark(), colour);
     }
 }
 
@@ -137,11 +148,11 @@ fn scale(ui: &Ui, place: &Place) {
                 _ => Align2::CENTER_BOTTOM,
             };
             let at = match i {
-                -6 => place.whole.left(),
-                6 => place.whole.right(),
+                -6 => place.whole.left() + 3.0,
+                6 => place.whole.right() - 3.0,
                 _ => x,
             };
-            ui.painter().text(pos2(at, place.whole.bottom()), align, words, font.clone(), quiet);
+            ui.painter().text(pos2(at, place.whole.bottom() - 1.0), align, words, font.clone(), quiet);
         }
     }
 }

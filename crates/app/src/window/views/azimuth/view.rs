@@ -6,7 +6,7 @@ use egui::{
     Align, Event, EventFilter, Key, Layout, PointerButton, Popup, Response, RichText, Sense, StrokeKind, Ui,
     WidgetInfo, vec2,
 };
-use ringwright_core::aim::NoSetting;
+use ringwright_core::aim::{NoAzimuth, NoSetting};
 use ringwright_core::frames::Hkl;
 use ringwright_core::reach::Verdict;
 use ringwright_core::work::AzimuthView;
@@ -92,8 +92,8 @@ impl AzimuthRibbon {
         let made = self.content(&(Arc::clone(reach), hkl));
         let view = match (&reach.azimuth, made) {
             (Err(why), _) => return instead(ui, why),
-            (_, Some(Made { content: Some(Err(none)), .. })) => {
-                return instead(ui, &Verdict::from(*none).detail(&reach.instrument));
+            (Ok(view), Some(Made { content: Some(Err(none)), .. })) => {
+                return instead(ui, &why_none(*none, view, reach));
             }
             (_, Some(Made { content: None, .. })) => {
                 return instead(ui, "the azimuths of this reflection could not be worked out");
@@ -131,6 +131,17 @@ impl AzimuthRibbon {
 
 fn same(a: &Subject, b: &Subject) -> bool {
     Arc::ptr_eq(&a.0, &b.0) && a.1 == b.1
+}
+
+/// Why a reflection has no azimuth, with the reference if it is that.
+fn why_none(none: NoSetting, view: &AzimuthView, reach: &Reach) -> String {
+    match none {
+        NoSetting::NoAzimuth(NoAzimuth::ReferenceAlongQ) => {
+            let from = from_words(view.reference());
+            format!("ψ counts from {from}, and that is parallel to Q; an azimuth rule can name another reference")
+        }
+        other => Verdict::from(other).detail(&reach.instrument),
+    }
 }
 
 /// Why there is no ribbon, in its place.
