@@ -1,4 +1,4 @@
-use egui::{Button, ComboBox, CornerRadius, Response, Sense, Stroke, StrokeKind, Ui, vec2};
+use egui::{Button, ComboBox, CornerRadius, Response, RichText, Sense, Stroke, StrokeKind, Ui, vec2};
 use ringwright_core::aim::{Reference, Rule};
 use ringwright_core::instrument::{AxisName, Instrument};
 use ringwright_core::quantity::{Component, Degrees, Index};
@@ -52,10 +52,12 @@ fn slots(ui: &mut Ui, machine: &Instrument, rules: &[Rule]) {
     let sample = machine.sample_axes().iter().filter(|axis| !axis.set_by_hand).count();
     let detector = machine.detector_axes().len();
     let spare = (sample + detector).saturating_sub(3);
-    ui.horizontal(|ui| {
+    ui.horizontal_wrapped(|ui| {
         ui.spacing_mut().item_spacing.x = 4.0;
-        let sum = format!("{sample} sample + {detector} detector \u{2212} 3 = {spare} spare");
-        ui.label(egui::RichText::new(sum).color(tones.quiet).small());
+        let sum = format!("{sample} + {detector} \u{2212} 3 = {spare} spare");
+        let counted =
+            "Sample axes that move, and detector axes, less the three angles that bring a node onto the detector.";
+        ui.label(RichText::new(sum).color(tones.quiet).small()).on_hover_text(counted);
         for i in 0..spare.max(rules.len()) {
             let (rect, response) = ui.allocate_exact_size(vec2(14.0, 14.0), Sense::hover());
             let rect = rect.shrink(1.0);
@@ -65,9 +67,22 @@ fn slots(ui: &mut Ui, machine: &Instrument, rules: &[Rule]) {
                 (None, _) => ("empty: one more rule is wanted".to_owned(), egui::Color32::TRANSPARENT, tones.doubt),
             };
             ui.painter().rect(rect, CornerRadius::same(3), fill, Stroke::new(1.5, edge), StrokeKind::Inside);
+            // One too many is crossed out: not told from a filled one by colour alone.
+            if i >= spare {
+                let cross = rect.shrink(3.0);
+                let stroke = Stroke::new(1.5, tones.card);
+                ui.painter().line_segment([cross.left_top(), cross.right_bottom()], stroke);
+                ui.painter().line_segment([cross.right_top(), cross.left_bottom()], stroke);
+            }
             ui.ctx()
                 .accesskit_node_builder(response.id, |node| node.set_label(format!("Spare angle {}: {word}", i + 1)));
             response.on_hover_text(word);
+        }
+        let (empty, many) = (spare.saturating_sub(rules.len()), rules.len().saturating_sub(spare));
+        if many > 0 {
+            ui.label(RichText::new(format!("{many} too many")).color(tones.bad).small());
+        } else if empty > 0 {
+            ui.label(RichText::new(format!("{empty} empty")).color(tones.doubt).small());
         }
     });
 }
@@ -195,10 +210,10 @@ impl Editor<'_> {
                         *factor = new;
                     }
                     ui.label("×");
-                    editor.axis(ui, "axis it follows", "Tie.to", to);
                 });
                 self.row(ui, |editor, ui| {
-                    editor.angle(ui, "plus", "Tie.offset_deg", "Offset of the tie, degrees", offset_deg)
+                    editor.axis(ui, "axis it follows", "Tie.to", to);
+                    editor.angle(ui, "+", "Tie.offset_deg", "Offset of the tie, degrees", offset_deg)
                 });
             }
         }

@@ -217,3 +217,37 @@ fn kept() -> Option<ringwright_core::session::OrientationDocument> {
     let u = ((c(1.0), c(0.0), c(0.0)), (c(0.0), c(1.0), c(0.0)), (c(0.0), c(0.0), c(1.0)));
     Some(ringwright_core::session::OrientationDocument { u, confirmed: false })
 }
+
+/// With two ties the windows of a six-circle take long: the ribbon says so, and can be turned meanwhile.
+#[test]
+fn while_the_windows_are_worked_out_the_reflection_can_be_turned() {
+    let mut harness = demo(0);
+    let session = &mut harness.state_mut().opened.session;
+    session.machine = ringwright_core::session::MachineChoice::Named("six-circle".to_owned());
+    session.peaks.clear();
+    session.orientation = kept();
+    session.targets = ron::from_str("List([(h: 1, k: 2, l: 3)])").unwrap();
+    session.rules = [
+        r#"Tie(axis: "mu", to: "chi", factor: 0.37, offset_deg: 3)"#,
+        "Azimuth(reference: Reciprocal(h: 0, k: 0, l: 1), at_deg: 20)",
+        r#"Tie(axis: "nu", to: "delta", factor: 0.5, offset_deg: 3)"#,
+    ]
+    .map(|rule| ron::from_str(rule).unwrap())
+    .to_vec();
+    settle(&mut harness);
+    let ctx = harness.ctx.clone();
+    harness.state_mut().perform(&ctx, Command::Select(Hkl::new(1.0, 2.0, 3.0)));
+    harness.run_steps(3);
+    if harness.state().views.azimuth.is_waiting() {
+        let description =
+            harness.get_by_label(RIBBON).accesskit_node().data().description().unwrap_or_default().to_owned();
+        assert_eq!(description, "being worked out");
+    }
+    let at = on_ribbon(&harness, 0.7);
+    harness.drag_at(at);
+    harness.step();
+    assert!(by_hand(&harness).is_some());
+    settle(&mut harness);
+    assert!(!harness.state().views.azimuth.is_waiting());
+    assert!(by_hand(&harness).is_some(), "what was turned stays when the windows arrive");
+}

@@ -116,11 +116,14 @@ fn ron_targets(min: f64) -> ringwright_core::session::Targets {
 #[test]
 fn the_slots_tell_which_spare_angles_the_rules_fill() {
     let mut harness = demo(0);
+    assert!(harness.query_by_label("3 + 1 \u{2212} 3 = 1 spare").is_some());
     assert!(harness.query_by_label("Spare angle 1: filled by bisecting").is_some());
     press(&mut harness, "Add a rule");
     assert!(harness.query_by_label("Spare angle 2: bisecting is one too many").is_some());
+    assert!(harness.query_by_label("1 too many").is_some());
     press(&mut harness, "Remove rule 2");
     press(&mut harness, "Remove rule 1");
+    assert!(harness.query_by_label("1 empty").is_some());
     assert!(harness.query_by_label("Spare angle 1: empty: one more rule is wanted").is_some());
 }
 
@@ -183,4 +186,73 @@ fn a_rule_that_does_not_fit_is_told_at_its_field_and_everything_else_stays() {
     settle(&mut harness);
     assert!(wrong(&harness, "Rule 1").is_none());
     assert!(harness.state().results().current_plan().is_some());
+}
+
+/// A six-circle with a surface: every kind of rule can be on it.
+fn six_circle() -> Harness<'static, App> {
+    let mut harness = demo(0);
+    let session = &mut harness.state_mut().opened.session;
+    session.machine = ringwright_core::session::MachineChoice::Named("six-circle".to_owned());
+    session.peaks.clear();
+    session.rules = ["Hold(axis: \"mu\", at_deg: 0)", "Bisecting", "Hold(axis: \"nu\", at_deg: 0)"]
+        .map(|rule| ron::from_str(rule).unwrap())
+        .to_vec();
+    settle(&mut harness);
+    harness
+}
+
+/// Chooses from the list of a rule; a list that is open stays so where the choice is made without a pointer.
+fn choose(harness: &mut Harness<'_, App>, list: &str, name: &str) {
+    if harness.query_by_label(name).is_none() {
+        press(harness, list);
+    }
+    press(harness, name);
+}
+
+#[test]
+fn a_six_circle_with_a_surface_takes_the_rules_that_others_cannot() {
+    let mut harness = six_circle();
+    assert!(harness.query_by_label("4 + 2 \u{2212} 3 = 3 spare").is_some());
+    press(&mut harness, "The crystal has a surface");
+    enter(&mut harness, "Outward normal of the surface", "1 0 1");
+    for (name, rule) in [
+        ("diffraction plane", "DiffractionPlane(turned_deg: 0)"),
+        ("incidence", "Incidence(at_deg: 0)"),
+        ("exit", "Exit(at_deg: 0)"),
+        ("equal incidence and exit", "EqualIncidenceAndExit"),
+        ("hold delta", "Hold(axis: \"delta\", at_deg: 0)"),
+        ("freest azimuth", "Freest(reference: Reciprocal(h: 0, k: 0, l: 1))"),
+    ] {
+        choose(&mut harness, "Rule 2", name);
+        assert_eq!(harness.state().session().rules[1], ron::from_str::<Rule>(rule).unwrap(), "{name}");
+        for i in 1..=3 {
+            assert!(harness.query_by_label_contains(&format!("Spare angle {i}: filled by")).is_some(), "{name}, {i}");
+        }
+    }
+    for (name, field, value, rule) in [
+        ("diffraction plane", "Turn of the plane from horizontal, degrees", "90", "DiffractionPlane(turned_deg: 90)"),
+        ("incidence", "Incidence, degrees", "1.5", "Incidence(at_deg: 1.5)"),
+        ("exit", "Exit, degrees", "2", "Exit(at_deg: 2)"),
+        ("hold delta", "Hold delta at, degrees", "12", "Hold(axis: \"delta\", at_deg: 12)"),
+    ] {
+        choose(&mut harness, "Rule 2", name);
+        enter(&mut harness, field, value);
+        assert_eq!(harness.state().session().rules[1], ron::from_str::<Rule>(rule).unwrap());
+    }
+}
+
+#[test]
+fn a_rule_that_cannot_be_is_greyed_and_says_why() {
+    let mut harness = demo(0);
+    press(&mut harness, "Rule 1");
+    for name in ["diffraction plane", "incidence", "exit", "equal incidence and exit"] {
+        assert!(harness.get_by_label(name).accesskit_node().is_disabled(), "{name}");
+    }
+    assert!(!harness.get_by_label("azimuth").accesskit_node().is_disabled());
+    harness.get_by_label("diffraction plane").scroll_to_me();
+    harness.run_steps(10);
+    let at = harness.get_by_label("diffraction plane").rect().center();
+    harness.hover_at(at);
+    harness.run_steps(60);
+    assert!(harness.query_by_label_contains("needs two detector axes").is_some());
 }

@@ -46,3 +46,51 @@ fn what_a_row_has_no_room_for_is_told_under_the_pointer() {
     // P n m a: h 0 0 with odd h is absent.
     assert!(harness.query_by_label_contains("absent by symmetry: ").is_some());
 }
+
+/// Nothing of a rule is cut off by the edge of its column, whatever the rule.
+#[test]
+fn rules_fit_into_their_column() {
+    let mut harness = demo(0);
+    let edge = place(&harness, "Reciprocal lattice").left() - 6.0;
+    for (rule, labels) in [
+        (
+            r#"Tie(axis: "omega", to: "two_theta", factor: 0.5, offset_deg: 0)"#,
+            ["Factor of the tie", "Rule 1, axis it follows", "Offset of the tie, degrees"],
+        ),
+        (
+            "Azimuth(reference: Reciprocal(h: 0, k: 0, l: 1), at_deg: 20)",
+            ["Azimuth, degrees", "Rule 1 reference, kind", "Remove rule 1"],
+        ),
+    ] {
+        harness.state_mut().opened.session.rules = vec![ron::from_str(rule).unwrap()];
+        settle(&mut harness);
+        for label in labels {
+            let at = harness.get_by_label(label).rect();
+            assert!(at.right() < edge, "{label}: {at}, {edge}");
+        }
+    }
+}
+
+/// The ribbon and all dials of a four-circle are seen without scrolling, and the ribbon stays where it is while it is used.
+#[test]
+fn the_ribbon_is_in_sight_and_does_not_move() {
+    let screen = egui::Rect::from_min_size(egui::Pos2::ZERO, vec2(LAPTOP[0], LAPTOP[1]));
+    for i in 0..DEMOS.len() {
+        let mut harness = demo(i);
+        let hkl = harness.state().results().current_plan().unwrap().list.rows[2].hkl;
+        perform(&mut harness, Command::Select(hkl));
+        let before = harness.get_by_label("Azimuth ribbon").rect();
+        for meter in harness.query_all_by_role(egui::Role::Meter) {
+            assert!(screen.contains_rect(meter.rect()) && meter.rect().top() > before.bottom());
+        }
+        assert!(screen.contains_rect(before), "{before}");
+        for part in [0.1, 0.5, 0.9] {
+            let at = before.lerp_inside(vec2(part, 0.4));
+            harness.drag_at(at);
+            harness.run_steps(2);
+            harness.drop_at(at);
+            harness.run_steps(40);
+            assert_eq!(harness.get_by_label("Azimuth ribbon").rect(), before, "{part}");
+        }
+    }
+}

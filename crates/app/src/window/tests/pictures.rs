@@ -78,7 +78,7 @@ type Act = fn(&mut Harness<'static, App>);
 #[test]
 fn pictures_of_other_states_are_drawn() {
     let folder = std::env::var_os("RINGWRIGHT_SHOTS");
-    let states: [(&str, Act); 16] = [
+    let states: [(&str, Act); 18] = [
         ("refused", |harness| {
             enter(harness, "a, Å", "-3");
             enter(harness, "Peak 1 chi, degrees", "1,5");
@@ -117,6 +117,8 @@ fn pictures_of_other_states_are_drawn() {
         ("azimuth-dark", |harness| turn_planned(harness, 0.3)),
         ("azimuth-surface-light", grazing),
         ("azimuth-surface-dark", grazing),
+        ("rules-light", rules),
+        ("rules-dark", rules),
         ("export", |harness| perform(harness, Command::Export)),
         ("unsaved", |harness| {
             enter(harness, "b, Å", "6.3");
@@ -157,6 +159,22 @@ fn turn(harness: &mut Harness<'static, App>, hkl: Hkl, part: f32) {
 fn turn_planned(harness: &mut Harness<'static, App>, part: f32) {
     let hkl = harness.state().results().current_plan().unwrap().list.rows[2].hkl;
     turn(harness, hkl, part);
+}
+
+/// The card of rules: one that fits, one that does not, and one too many.
+fn rules(harness: &mut Harness<'static, App>) {
+    for card in ["Fold Crystal", "Fold Beam", "Fold Peaks found", "Fold Orientation"] {
+        press(harness, card);
+    }
+    harness.state_mut().opened.session.rules = [
+        "Azimuth(reference: Direct(u: 1, v: -1, w: 0), at_deg: 20)",
+        "Tie(axis: \"omega\", to: \"omega\", factor: 0.5, offset_deg: 0)",
+    ]
+    .map(|rule| ron::from_str(rule).unwrap())
+    .to_vec();
+    settle(harness);
+    harness.get_by_label("Add a rule").scroll_to_me();
+    harness.run_steps(10);
 }
 
 /// A crystal with a surface, so that there are several reasons why not.

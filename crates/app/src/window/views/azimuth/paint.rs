@@ -71,6 +71,11 @@ pub(super) fn ribbon(ui: &Ui, place: &Place, content: Option<&Content>, psi_deg:
         }
         crossings(painter, place, content, text);
     }
+    if content.is_none() {
+        let font = TextStyle::Small.resolve(ui.style());
+        let words = "working out what is allowed…";
+        painter.text(place.band.center(), Align2::CENTER_CENTER, words, font, ui.visuals().weak_text_color());
+    }
     if let Some(psi_deg) = psi_deg {
         handle(painter, place, psi_deg, palette, ui.visuals().panel_fill);
     }
